@@ -1,0 +1,1 @@
+"""The engine: entries in, results out. It never imports MkDocs."""

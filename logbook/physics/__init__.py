@@ -1,0 +1,1 @@
+"""Pure functions on floats and numpy arrays; stages stand on the last axis."""

@@ -1,0 +1,74 @@
+"""What is wrong in the input: where it stands, what was written, what was expected."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator
+from dataclasses import dataclass
+from difflib import get_close_matches
+
+PROBLEM = "problem"
+CAUTION = "caution"
+
+
+@dataclass(frozen=True, order=True, slots=True)
+class Place:
+    """A spot in a file; line and column count from 1, as editors do."""
+
+    file: str
+    line: int
+    column: int = 1
+
+    def __str__(self) -> str:
+        return f"{self.file}:{self.line}:{self.column}"
+
+
+@dataclass(frozen=True, order=True, slots=True)
+class Problem:
+    """One fault: `code` is stable, `message` quotes what is there, `hint` says what to do."""
+
+    place: Place
+    code: str
+    message: str
+    hint: str = ""
+    severity: str = PROBLEM
+
+    def __str__(self) -> str:
+        said = f"{self.message} {self.hint}".strip()
+        return f"{self.place}: {said} [{self.code}]"
+
+
+class Problems:
+    """Collects every fault of a run; iterates over them sorted by place, each once."""
+
+    def __init__(self) -> None:
+        self._found: dict[Problem, None] = {}
+
+    def add(self, place: Place, code: str, message: str, hint: str = "", severity: str = PROBLEM) -> None:
+        """Keep one more fault; the same one said twice is kept once."""
+        self._found[Problem(place, code, message, hint, severity)] = None
+
+    def extend(self, problems: Iterable[Problem]) -> None:
+        """Keep faults that were found elsewhere."""
+        self._found.update(dict.fromkeys(problems))
+
+    def within(self, file: str, first_line: int, last_line: int) -> list[Problem]:
+        """The faults on these lines of a file, in order."""
+        return [p for p in self if p.place.file == file and first_line <= p.place.line <= last_line]
+
+    def __iter__(self) -> Iterator[Problem]:
+        return iter(sorted(self._found))
+
+    def __len__(self) -> int:
+        return len(self._found)
+
+
+def did_you_mean(word: str, known: Iterable[str]) -> str:
+    """A sentence that names the likely word, or that lists all of a short list; else nothing."""
+    words = list(known)
+    close = get_close_matches(word.lower(), [w.lower() for w in words], n=1, cutoff=0.6)
+    if close:
+        likely = next(w for w in words if w.lower() == close[0])
+        return f"Did you mean '{likely}'?"
+    if words and len(words) <= 12:
+        return "Known here: " + ", ".join(words) + "."
+    return ""

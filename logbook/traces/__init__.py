@@ -1,0 +1,1 @@
+"""Trace files from instruments: CSV and Touchstone."""

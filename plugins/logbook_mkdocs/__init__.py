@@ -1,0 +1,1 @@
+"""The MkDocs adapter: thin, with no logic that the engine could hold."""

@@ -12,7 +12,7 @@ import numpy as np
 
 from logbook.physics.constants import T0, Array
 from logbook.physics.decibels import db_from_ratio, ratio_from_db
-from logbook.physics.noise import noise_density_dbm_hz
+from logbook.physics.noise import density_from_temperature
 
 
 @dataclass(frozen=True)
@@ -37,7 +37,7 @@ class Cascade:
     """What comes out; [..., n] at the output of each stage, the last one being the chain's total.
 
     nf_db and noise_temperature_k = T0 (F - 1) refer to a source at T0; the densities (dBm/Hz) to the actual source:
-    output_density at the node, input_density = the same over the wanted gain (the noise floor).
+    noise_dbm_per_hz at the node, input_noise_dbm_per_hz = the same over the wanted gain (the noise floor).
     iip3, iip2, ip1db in dBm at the chain's input, +inf where all are ideal.
     noise_share, iip3_share [..., n] are parts of the chain's total by stage, source_share [...] the source's part.
     Source: see `cascade`.
@@ -46,8 +46,8 @@ class Cascade:
     gain_db: Array
     nf_db: Array
     noise_temperature_k: Array
-    input_density_dbm_hz: Array
-    output_density_dbm_hz: Array
+    input_noise_dbm_per_hz: Array
+    noise_dbm_per_hz: Array
     iip3_dbm: Array
     iip2_dbm: Array
     ip1db_dbm: Array
@@ -74,14 +74,14 @@ def cascade(stages: Stages, source_temperature_k: Array | float = T0, in_phase: 
     floor = images * (source + own)
     all_noise = source + own[..., -1:]
     factor = images * (1.0 + own / T0)
-    density = noise_density_dbm_hz(floor)
+    density = density_from_temperature(floor)
     third = 1.0 if in_phase else 2.0
     return Cascade(
         gain_db=gain_db,
         nf_db=db_from_ratio(factor),
         noise_temperature_k=T0 * (factor - 1.0),
-        input_density_dbm_hz=density,
-        output_density_dbm_hz=density + gain_db,
+        input_noise_dbm_per_hz=density,
+        noise_dbm_per_hz=density + gain_db,
         iip3_dbm=input_intercept(before_db, stages.iip3_dbm, third),
         iip2_dbm=input_intercept(before_db, stages.iip2_dbm, third / 2.0),
         ip1db_dbm=input_intercept(before_db, stages.ip1db_dbm, 1.0),

@@ -47,7 +47,7 @@ def own_temperature_from_nf_dsb(nf_dsb_db: V, image: V) -> V:
     return T0 * (2.0 * ratio_from_db(nf_dsb_db) - 1.0) - T0 * image
 
 
-def own_temperature_of_passive(loss_db: V, temperature_k: V) -> V:
+def own_temperature_passive(loss_db: V, temperature_k: V) -> V:
     """(L - 1) T: a matched passive of loss L (dB) at temperature T (K), any shape; negative for a negative loss.
 
     F = 1 + (L - 1) T/T0 equals L at 290 K only. Source: Pozar, Microwave Engineering, noise of a lossy line.
@@ -55,32 +55,23 @@ def own_temperature_of_passive(loss_db: V, temperature_k: V) -> V:
     return (ratio_from_db(loss_db) - 1.0) * temperature_k
 
 
-def own_temperature_from_voltage(voltage_density: V, current_density: V, resistance_ohm: V) -> V:
-    """(e^2 + (i R)^2) / (4 k R): V/rtHz, A/rtHz and source resistance (ohm) to K, high-impedance input, any shape.
+def own_temperature_from_noise_voltage(
+    voltage_density: V, current_density: V, resistance_ohm: V, *, terminated: bool = False
+) -> V:
+    """Noise voltage (V/rtHz) and current (A/rtHz) at a source of R ohm as a stage's own temperature (K), any shape.
 
-    F = 1 + (e^2 + (i R)^2) / (4 k T0 R); nan for R of zero or less.
+    High-impedance input: F = 1 + (e^2 + (i R)^2) / (4 k T0 R). terminated, by a resistor equal to R at T0 across the
+    input: F = 2 + 4 e^2/(4 k T0 R) + i^2 R/(4 k T0). The temperature is T0 (F - 1); nan for R of zero or less.
     Source: Motchenbacher, Low-Noise Electronic System Design.
     """
     resistance = positive_or_nan(resistance_ohm)
-    noise = np.square(voltage_density) + np.square(np.multiply(current_density, resistance))
-    result: V = noise / (4.0 * BOLTZMANN * resistance)
+    voltage = np.square(voltage_density) / (4.0 * BOLTZMANN * resistance)
+    current = np.square(current_density) * resistance / (4.0 * BOLTZMANN)
+    result: V = T0 + 4.0 * voltage + current if terminated else voltage + current
     return result
 
 
-def own_temperature_from_voltage_terminated(voltage_density: V, current_density: V, resistance_ohm: V) -> V:
-    """T0 + 4 e^2/(4 k R) + i^2 R/(4 k): the same behind a resistor equal to R at T0 across the input; K, any shape.
-
-    F = 2 + 4 e^2/(4 k T0 R) + i^2 R/(4 k T0); nan for R of zero or less.
-    Source: Motchenbacher, Low-Noise Electronic System Design.
-    """
-    resistance = positive_or_nan(resistance_ohm)
-    from_voltage = np.square(voltage_density) / (BOLTZMANN * resistance)
-    from_current = np.square(current_density) * resistance / (4.0 * BOLTZMANN)
-    result: V = T0 + from_voltage + from_current
-    return result
-
-
-def noise_density_dbm_hz(temperature_k: V) -> V:
+def density_from_temperature(temperature_k: V) -> V:
     """k T in dBm/Hz, any shape; -173.975 at 290 K; nan for 0 K and below. Source: SI 2019."""
     return dbm_from_watt(BOLTZMANN * temperature_k)
 
@@ -98,25 +89,59 @@ def noise_power_dbm(density_dbm_hz: V, bandwidth_hz: V) -> V:
     return density_dbm_hz + db_from_ratio(bandwidth_hz)
 
 
-def temperature_from_external(fa_db: V) -> V:
+def fa_to_temperature(fa_db: V) -> V:
     """Ta = T0 10^(Fa/10): external noise Fa (dB above k T0) to K, any shape. Source: ITU-R P.372-16, fa = Ta/T0."""
     return T0 * ratio_from_db(fa_db)
 
 
-def external_from_temperature(temperature_k: V) -> V:
+def temperature_to_fa(temperature_k: V) -> V:
     """Fa = 10 lg(Ta/T0): K to dB above k T0, any shape; nan for 0 K and below. Source: ITU-R P.372-16, fa = Ta/T0."""
     return db_from_ratio(temperature_k / T0)
 
 
-def galactic_fa_db(frequency_hz: float) -> float:
-    """Fam = 52 - 23 lg(f/MHz): median galactic noise, Hz to dB above k T0; 29.0 dB at 10 MHz; nan for f <= 0.
+def galactic_fa_db(frequency_hz: V) -> V:
+    """Fam = 52 - 23 lg(f/MHz): median galactic noise, Hz to dB above k T0, any shape; nan for f of zero or less.
 
-    Holds from about 10 MHz (below, the ionosphere may shut it out) to 100 MHz and not far beyond.
+    29.0 dB at 10 MHz. Holds from about 10 MHz (below, the ionosphere may shut it out) to 100 MHz and not far beyond.
     Source: ITU-R P.372-16 eq. 13.
     """
-    if not frequency_hz > 0.0:
+    return 52.0 - 2.3 * db_from_ratio(frequency_hz / 1e6)
+
+
+def galactic_temperature(frequency_hz: V) -> V:
+    """T0 10^(Fam/10): median galactic noise, Hz to K, any shape; see `galactic_fa_db`.
+
+    Source: ITU-R P.372-16 eq. 13.
+    """
+    return fa_to_temperature(galactic_fa_db(frequency_hz))
+
+
+def noise_bandwidth_ratio(rbw_filter: str) -> float:
+    """Noise bandwidth over RBW (1) of a filter by name; RBW is the -3 dB width, for gaussian_6db the -6 dB width.
+
+    flat 1; gaussian sqrt(pi/ln 2)/2 = 1.0645; gaussian_6db 0.7527; synchronous_n, n equal poles, sqrt(pi) G(n-1/2) /
+    (2 G(n) sqrt(2^(1/n) - 1)); butterworth_n (pi/2n)/sin(pi/2n). nan for any other name.
+    Source: closed form, the integral of the power response over its half-power width.
+    """
+    gaussian = math.sqrt(math.pi / math.log(2.0)) / 2.0
+    named = {"flat": 1.0, "gaussian": gaussian, "gaussian_6db": gaussian / math.sqrt(2.0)}
+    if rbw_filter in named:
+        return named[rbw_filter]
+    family, _, poles = rbw_filter.rpartition("_")
+    shapes = {"synchronous": _synchronous, "butterworth": _butterworth}
+    if family not in shapes or not (poles.isascii() and poles.isdigit() and 1 <= int(poles) <= 100):
         return math.nan
-    return 52.0 - 23.0 * math.log10(frequency_hz / 1e6)
+    return shapes[family](int(poles))
+
+
+def _synchronous(poles: int) -> float:
+    gammas = math.gamma(poles - 0.5) / math.gamma(poles)
+    return math.sqrt(math.pi) * gammas / (2.0 * math.sqrt(2.0 ** (1.0 / poles) - 1.0))
+
+
+def _butterworth(poles: int) -> float:
+    angle = math.pi / (2.0 * poles)
+    return angle / math.sin(angle)
 
 
 def spot_noise_voltage(temperature_k: float, resistance_ohm: float) -> float:

@@ -41,7 +41,7 @@ def test_receiver_front_end_of_the_textbook() -> None:
     factor = 10 ** (total.nf_db[-1] / 10)
     assert factor == pytest.approx(1.80, abs=0.005)
     assert total.noise_temperature_k[-1] == pytest.approx(232.0, abs=0.5)
-    output = noise.noise_power_dbm(total.output_density_dbm_hz[-1], 10e6)
+    output = noise.noise_power_dbm(total.noise_dbm_per_hz[-1], 10e6)
     assert output == pytest.approx(-96.8, abs=0.05)
     assert output + 20.0 - total.gain_db[-1] == pytest.approx(-82.8, abs=0.05)
 
@@ -80,8 +80,8 @@ def test_stage_by_stage_as_on_paper() -> None:
         g = 10 ** (g_db / 10)
         t = g * (t * (1 + im) + 290.0 * (10 ** (nf_db / 10) - 1) - 290.0 * im)
         g_all *= g
-        assert total.output_density_dbm_hz[i] == pytest.approx(10 * np.log10(1.380649e-20 * t), abs=1e-9)
-        assert total.input_density_dbm_hz[i] == pytest.approx(10 * np.log10(1.380649e-20 * t / g_all), abs=1e-9)
+        assert total.noise_dbm_per_hz[i] == pytest.approx(10 * np.log10(1.380649e-20 * t), abs=1e-9)
+        assert total.input_noise_dbm_per_hz[i] == pytest.approx(10 * np.log10(1.380649e-20 * t / g_all), abs=1e-9)
 
 
 def two_port(gain_db: float, nf_db: float) -> skrf.Network:
@@ -111,7 +111,7 @@ def test_passive_at_another_temperature_against_scikit_rf() -> None:
     """A pad of 3 dB ahead of an amplifier: only at 290 K does its loss equal its noise figure."""
     pad = two_port(-3.0, 10 * np.log10(1 + (10**0.3 - 1) * 77.0 / 290.0))
     whole = pad ** two_port(15.0, 2.0)
-    own = np.array([noise.own_temperature_of_passive(3.0, 77.0), noise.own_temperature_from_nf(2.0, 0.0)])
+    own = np.array([noise.own_temperature_passive(3.0, 77.0), noise.own_temperature_from_nf(2.0, 0.0)])
     ideal = np.full(2, INF)
     total = cascade(Stages(np.array([-3.0, 15.0]), own, np.zeros(2), ideal, ideal, ideal))
     assert total.nf_db[-1] == pytest.approx(float(10 * np.log10(whole.nf(50)[0].real)), abs=1e-4)
@@ -153,7 +153,7 @@ def test_noise_is_not_known_from_the_unknown_stage_on() -> None:
     total = cascade(chain([10.0, 5.0, 3.0], [1.0, NAN, 2.0], iip3=[0.0, 10.0, 20.0]))
     assert np.isfinite(total.nf_db[0])
     assert np.all(np.isnan(total.nf_db[1:]))
-    assert np.all(np.isnan(total.output_density_dbm_hz[1:]))
+    assert np.all(np.isnan(total.noise_dbm_per_hz[1:]))
     assert np.all(np.isnan(total.noise_share))
     assert np.isnan(total.source_share)
     assert np.all(np.isfinite(total.iip3_dbm))
@@ -164,14 +164,14 @@ def test_shares_are_what_vanishes_with_the_stage() -> None:
     stages = chain([12.0, -6.0, 25.0], [1.5, 8.0, 4.0], image=[0.0, 0.2, 0.0])
     total = cascade(stages, 200.0)
     assert total.noise_share.sum() + total.source_share == pytest.approx(1.0, abs=1e-12)
-    with_all = 10 ** (total.output_density_dbm_hz[-1] / 10)
+    with_all = 10 ** (total.noise_dbm_per_hz[-1] / 10)
     for i in range(3):
         own = stages.own_temperature_k.copy()
         own[i] = 0.0
         quiet = Stages(stages.gain_db, own, stages.image, stages.iip3_dbm, stages.iip2_dbm, stages.ip1db_dbm)
-        without = 10 ** (cascade(quiet, 200.0).output_density_dbm_hz[-1] / 10)
+        without = 10 ** (cascade(quiet, 200.0).noise_dbm_per_hz[-1] / 10)
         assert total.noise_share[i] == pytest.approx(1 - without / with_all, abs=1e-9)
-    dark = 10 ** (cascade(stages, 0.0).output_density_dbm_hz[-1] / 10)
+    dark = 10 ** (cascade(stages, 0.0).noise_dbm_per_hz[-1] / 10)
     assert total.source_share == pytest.approx(1 - dark / with_all, abs=1e-9)
 
 

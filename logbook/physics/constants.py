@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from typing import TypeVar
 
 import numpy as np
@@ -18,8 +19,8 @@ BOLTZMANN = 1.380649e-23
 T0 = 290.0
 """K, the reference temperature of noise figures. Source: IEEE convention."""
 
-KT0_DBM_HZ = -173.97518719166367
-"""10 lg(k T0 / 1 mW) in dBm/Hz. Source: closed form from the two above."""
+KT0_DBM_HZ = 10.0 * math.log10(BOLTZMANN * T0) + 30.0
+"""10 lg(k T0 / 1 mW) = -173.975 dBm/Hz. Source: closed form from the two above."""
 
 ZERO_CELSIUS = 273.15
 """K. Source: SI."""

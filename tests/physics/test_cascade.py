@@ -94,6 +94,7 @@ def two_port(gain_db: float, nf_db: float) -> skrf.Network:
     return made
 
 
+@pytest.mark.filterwarnings("ignore:divide by zero:RuntimeWarning")
 @pytest.mark.parametrize("seed", range(8))
 def test_cascades_of_noisy_two_ports_against_scikit_rf(seed: int) -> None:
     rng = np.random.default_rng(seed)

@@ -163,7 +163,9 @@ def _limits(text: str, form: re.Match[str], unit: Unit, value: float) -> float:
     if own in _RELATIVE and unit.dimension != "number":
         if unit.dimension in DECIBEL_DIMENSIONS or unit.offset or form["number"] is None:
             hint = "Write the limits in the unit of the value, such as '18 \u00b1 0.5 dB'."
-            raise bad_uncertainty(text.strip(), f"is a part of the value, which means nothing in {unit.symbol}", hint, offset)
+            raise bad_uncertainty(
+                text.strip(), f"is a part of the value, which means nothing in {unit.symbol}", hint, offset
+            )
         part = find_unit(own, ("number",))
         return abs(value) * _scaled(number, power, part) if part else nan
     return _limits_with_unit(text, number, power, own, unit, offset)

@@ -7,7 +7,18 @@ from math import floor, isfinite, log10
 
 NOT_KNOWN = "not known"
 
-_PREFIXES = ((12, "T"), (9, "G"), (6, "M"), (3, "k"), (0, ""), (-3, "m"), (-6, "\u00b5"), (-9, "n"), (-12, "p"), (-15, "f"))
+_PREFIXES = (
+    (12, "T"),
+    (9, "G"),
+    (6, "M"),
+    (3, "k"),
+    (0, ""),
+    (-3, "m"),
+    (-6, "\u00b5"),
+    (-9, "n"),
+    (-12, "p"),
+    (-15, "f"),
+)
 _PREFIXED = frozenset({"Hz", "V", "A", "W", "ohm", "V/rtHz", "A/rtHz", "s", "F", "H", "V/dB"})
 _SHOWN = {
     "ohm": "\u03a9",

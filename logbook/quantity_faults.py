@@ -119,7 +119,9 @@ def _grouped(written: str, plain: str, start: int, correct: re.Pattern[str]) -> 
 def _around_number(written: str, plain: str, wanted: tuple[str, ...], what: str, start: int) -> QuantityError:
     number = _NUMBER.match(plain)
     if number is None:
-        return QuantityError("number", f"'{written}' does not begin with a number; {expected(wanted, what)}.", "", start)
+        return QuantityError(
+            "number", f"'{written}' does not begin with a number; {expected(wanted, what)}.", "", start
+        )
     rest = plain[number.end() :]
     signs = re.search(r"\u00b1|\+/-", rest)
     if signs:

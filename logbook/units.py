@@ -65,7 +65,9 @@ def _dimensions() -> dict[str, Dimension]:
         ("length", "m", "a length", "1.5 m", "m mm cm"),
         ("voltage_ratio", "V/V", "a ratio of voltages", "0.5 V/V", "V/V mV/V uV/V"),
     )
-    return {name: Dimension(name, base, noun, example, tuple(usual.split())) for name, base, noun, example, usual in rows}
+    return {
+        name: Dimension(name, base, noun, example, tuple(usual.split())) for name, base, noun, example, usual in rows
+    }
 
 
 DIMENSIONS = _dimensions()

@@ -1,0 +1,112 @@
+"""Mixing products against brute force in plain Python, and a mixer's responses in closed form."""
+
+from __future__ import annotations
+
+from itertools import product
+
+import numpy as np
+import pytest
+
+from logbook.physics import mixing
+
+MHZ = 1e6
+
+
+def brute_force(sources: int, order: int, taken: tuple[int, ...]) -> set[tuple[int, ...]]:
+    found = set()
+    for row in product(range(-order, order + 1), repeat=sources):
+        used = [n for n in row if n]
+        if len(used) in taken and sum(map(abs, used)) <= order and used[0] > 0:
+            found.add(row)
+    return found
+
+
+@pytest.mark.parametrize(
+    ("sources", "order", "taken"),
+    [(2, 7, (2,)), (3, 5, (1, 2, 3)), (3, 9, (2, 3)), (4, 4, (2, 3)), (1, 5, (1,)), (2, 1, (1, 2)), (2, 3, (3,))],
+)
+def test_every_product_once(sources: int, order: int, taken: tuple[int, ...]) -> None:
+    rows = mixing.product_orders(sources, order, taken)
+    listed = [tuple(int(n) for n in row) for row in rows]
+    assert len(listed) == len(set(listed))
+    assert set(listed) == brute_force(sources, order, taken)
+    sums = mixing.product_order(rows)
+    assert np.all(np.diff(sums) >= 0)
+
+
+def test_six_sources_to_order_fifteen_are_all_there() -> None:
+    # Closed form: sum over k sources taken of C(6, k) 2^(k-1) C(15, k).
+    assert len(mixing.product_orders(6, 15)) == 6 * 15 + 15 * 2 * 105 + 20 * 4 * 455
+
+
+def test_landing_against_brute_force() -> None:
+    sources = [71.5 * MHZ, 50.1 * MHZ, 12.288 * MHZ]
+    targets, half = [21.4 * MHZ, 50.1 * MHZ], [20e3, 5e3]
+    rows = mixing.product_orders(3, 9)
+    hits = mixing.landing(rows, np.array(sources), np.array(targets), np.array(half))
+    expected = set()
+    for row in brute_force(3, 9, (1, 2, 3)):
+        f = abs(sum(n * s for n, s in zip(row, sources, strict=True)))
+        expected |= {(row, t) for t in range(2) if abs(f - targets[t]) <= half[t]}
+    found = [(tuple(int(n) for n in rows[p]), int(t)) for p, t in zip(hits.product, hits.target, strict=True)]
+    assert len(found) == len(set(found))
+    assert set(found) == expected
+    assert ((1, -1, 0), 0) in expected
+    ranked = [(int(mixing.product_order(rows)[p]), abs(o)) for p, o in zip(hits.product, hits.offset_hz, strict=True)]
+    assert ranked == sorted(ranked)
+    assert hits.frequency_hz - np.array(targets)[hits.target] == pytest.approx(hits.offset_hz)
+
+
+def test_the_wanted_conversion_is_left_out() -> None:
+    rows = mixing.product_orders(2, 5)
+    kept = mixing.without(rows, (-1, 1))
+    assert len(kept) == len(rows) - 1
+    assert (1, -1) not in {tuple(row) for row in kept.tolist()}
+
+
+@pytest.mark.parametrize("points", [1, 37, 400])
+def test_crossings_of_a_tuning_range_against_one_point_at_a_time(points: int) -> None:
+    tuned = np.linspace(50.0, 54.0, points) * MHZ
+    sources = np.stack([tuned, tuned + 21.4 * MHZ, np.full(points, 10 * MHZ)], axis=-1)
+    rows = mixing.without(mixing.product_orders(3, 11), (1, -1, 0))
+    crossed = mixing.crossings(rows, sources, np.array(21.4 * MHZ), 7.5e3)
+    expected = []
+    for i in range(points):
+        hits = mixing.landing(rows, sources[i], np.array([21.4 * MHZ]), np.array([7.5e3]))
+        expected += [(i, p) for p in sorted(hits.product.tolist())]
+    assert list(zip(crossed.point.tolist(), crossed.product.tolist(), strict=True)) == expected
+    lowest = mixing.lowest_order(rows, crossed, points)
+    for i in range(points):
+        orders = [int(mixing.product_order(rows)[p]) for j, p in expected if j == i]
+        assert lowest[i] == min(orders, default=0)
+
+
+def test_an_empty_tuning_range_has_no_crossings() -> None:
+    crossed = mixing.crossings(mixing.product_orders(2, 3), np.zeros((0, 2)), np.array(1.0), 1.0)
+    assert crossed.point.size == 0
+    assert mixing.lowest_order(mixing.product_orders(2, 3), crossed, 0).size == 0
+
+
+@pytest.mark.parametrize(("lo", "half_if"), [(800.0, 850.0), (1000.0, 950.0)])
+def test_half_if(lo: float, half_if: float) -> None:
+    # Closed form: 900 MHz, IF 100 MHz: low side 850, high side 950 MHz.
+    assert mixing.half_if_frequency(900.0, lo) == pytest.approx(half_if)
+
+
+def test_converter_from_two_metres() -> None:
+    # Own example: 144.3 to 28.3 MHz, LO 116 MHz: image 87.7, half-IF 130.15 MHz.
+    assert mixing.converted(144.3, 116.0) == pytest.approx(28.3)
+    assert mixing.image_frequency(144.3, 116.0) == pytest.approx(87.7)
+    assert mixing.half_if_frequency(144.3, 116.0) == pytest.approx(130.15)
+
+
+@pytest.mark.parametrize(
+    ("signal", "lo", "output"), [(50.1, 71.5, "difference"), (50.0, 10.0, "difference"), (5.0, 40.0, "sum")]
+)
+def test_responses_land_in_the_same_if(signal: float, lo: float, output: str) -> None:
+    wanted = mixing.converted(signal, lo, output)
+    image = mixing.image_frequency(signal, lo, output)
+    half = mixing.half_if_frequency(signal, lo, output)
+    assert image != signal
+    assert min(abs(abs(image - lo) - wanted), abs(image + lo - wanted)) == pytest.approx(0.0, abs=1e-9)
+    assert min(abs(abs(2 * half - 2 * lo) - wanted), abs(2 * half + 2 * lo - wanted)) == pytest.approx(0.0, abs=1e-9)

@@ -1,4 +1,4 @@
-"""The text of an entry: front matter and the fences of blocks, each with its lines. One scanner for all who need them."""
+"""The text of an entry: front matter and the fences of blocks, each with its lines. One scanner for all."""
 
 from __future__ import annotations
 
@@ -7,6 +7,7 @@ import re
 from bisect import bisect_right
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
+from itertools import accumulate, islice
 
 from logbook.problems import Place, Problems
 
@@ -113,7 +114,7 @@ def replace_fences(text: str, replacement: Callable[[int, Fence], str]) -> str:
     done = 0
     for number, (fence, prefix) in enumerate(_fences(text, lines, 0, "", Problems())):
         kept += lines[done : fence.line - 1]
-        kept += [(prefix + line).rstrip() for line in replacement(number, fence).split("\n")]
+        kept += [prefix + line if line else prefix.rstrip() for line in replacement(number, fence).split("\n")]
         done = fence.last_line
     return "\n".join(kept + lines[done:])
 
@@ -152,7 +153,7 @@ def _fences(text: str, lines: Sequence[str], start: int, path: str, problems: Pr
         if not mark.run:
             comment_end = _comment_end(text, mark.start)
         elif mark.opens:
-            end, closed = _end(mark, marks[number + 1 :], lines)
+            end, closed = _end(marks, number, lines)
             if not closed:
                 _not_closed(mark, end, len(lines), path, problems)
             _strange(mark, path, problems)
@@ -163,9 +164,7 @@ def _fences(text: str, lines: Sequence[str], start: int, path: str, problems: Pr
 
 
 def _marks(text: str, lines: Sequence[str]) -> list[_Mark]:
-    starts = [0]
-    for line in lines:
-        starts.append(starts[-1] + len(line) + 1)
+    starts = list(accumulate((len(line) + 1 for line in lines), initial=0))
     found = []
     for match in _MARK.finditer(text):
         start = match.start()
@@ -184,16 +183,18 @@ def _comment_end(text: str, start: int) -> int:
     line_start = text.rfind("\n", 0, start) + 1
     if text.count("`", line_start, start) % 2:
         return 0
-    return text.find("-->", start + len("<!--"))
+    # `<!-->` is a whole comment.
+    return text.find("-->", start + len("<!"))
 
 
-def _end(opening: _Mark, marks: Sequence[_Mark], lines: Sequence[str]) -> tuple[int, bool]:
-    """The line behind a fence (from 0), and whether the fence is closed."""
+def _end(marks: Sequence[_Mark], number: int, lines: Sequence[str]) -> tuple[int, bool]:
+    """The line behind the fence that the mark of this number opens (from 0), and whether it is closed."""
+    opening = marks[number]
     last = len(lines)
     if ">" in opening.prefix:
         inside = (number for number in range(opening.line + 1, last) if not lines[number].lstrip().startswith(">"))
         last = next(inside, last)
-    for mark in marks:
+    for mark in islice(marks, number + 1, None):
         if mark.line >= last or mark.interrupts(opening):
             return min(mark.line, last), False
         if mark.closes(opening):

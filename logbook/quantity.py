@@ -6,7 +6,7 @@ import re
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import lru_cache
-from math import inf, isfinite, log10, nan, sqrt
+from math import inf, isfinite, log, log10, nan, sqrt
 
 from logbook.quantity_display import key_frequency, show_delta, show_frequency, show_value
 from logbook.quantity_faults import (
@@ -18,7 +18,7 @@ from logbook.quantity_faults import (
     unreadable,
     wrong_dimension,
 )
-from logbook.units import DECIBEL_DIMENSIONS, Unit, find_unit
+from logbook.units import ABSOLUTE_ZERO_C, DECIBEL_DIMENSIONS, Unit, find_unit
 
 __all__ = [
     "Quantity",
@@ -65,13 +65,14 @@ _SIGNS = str.maketrans({"\u2212": "-", "\u2013": "-"})
 
 _RELATIVE = frozenset({"%", "ppm", "ppb"})
 _LARGEST_EXPONENT = 999
+_LOWEST = {"temperature": ABSOLUTE_ZERO_C, "noise_temperature": 0.0}
 
 
 def read_quantity(text: str, dimension: str | tuple[str, ...], what: str = "") -> Quantity:
     """The quantity written in a text, of the dimension or of one of the dimensions.
 
-    Standard uncertainty (JCGM 100:2008): digits in brackets as they stand (7.2.2); limits after the plus-minus sign of a
-    rectangular distribution, divided by the root of 3 (4.3.7); with `(k=2)` expanded, divided by k (4.3.3).
+    Standard uncertainty (JCGM 100:2008): digits in brackets as they stand (7.2.2); limits after the plus-minus sign
+    of a rectangular distribution, divided by the root of 3 (4.3.7); with `(k=2)` expanded, divided by k (4.3.3).
     Limits alone, `\u00b1 1.5 dB`, are an accuracy: its value is 0. `what` is the noun for messages ("gain").
     Raises QuantityError, and nothing else, for any other text.
     """
@@ -93,6 +94,8 @@ def _read(text: str, wanted: tuple[str, ...], what: str) -> Quantity:
         value = round(value + unit.offset, 10)
     if not isfinite(value):
         raise not_finite(text.strip(), max(form.start("number"), 0))
+    if value < _LOWEST.get(unit.dimension, -inf):
+        raise QuantityError("number", f"'{text.strip()}' is below absolute zero.", "", max(form.start("number"), 0))
     return Quantity(value, unit.base, unit.dimension, u, text.strip())
 
 
@@ -141,7 +144,9 @@ def _uncertainty(text: str, form: re.Match[str], unit: Unit, value: float) -> fl
         return None
     limits = _limits(text, form, unit, value)
     divisor = sqrt(3.0) if form["k"] is None else float(form["k"])
-    return _usable(limits / divisor if divisor else nan, text, form.start("around"))
+    if not divisor:
+        raise bad_uncertainty(text.strip(), "has a coverage factor of zero", "Write it as '(k=2)'.", form.start("k"))
+    return _usable(limits / divisor, text, form.start("around"))
 
 
 def _last_digits(number: str, last: str) -> str:
@@ -157,15 +162,16 @@ def _limits(text: str, form: re.Match[str], unit: Unit, value: float) -> float:
     number, _, exponent = form["around"].lower().partition("e")
     power = "e" + exponent if exponent else None
     own = form["of"]
+    offset = form.start("of")
+    if own in _RELATIVE and form["number"] and not form["unit"] and not form["close"]:
+        hint = f"Write '({form['number']} \u00b1 {form['around']}) {own}', or the limits as a number without '{own}'."
+        raise bad_uncertainty(text.strip(), "can be meant in two ways", hint, offset)
     if not own or not form["unit"]:
         return abs(_scaled(number, power, unit))
-    offset = form.start("of")
     if own in _RELATIVE and unit.dimension != "number":
         if unit.dimension in DECIBEL_DIMENSIONS or unit.offset or form["number"] is None:
-            hint = "Write the limits in the unit of the value, such as '18 \u00b1 0.5 dB'."
-            raise bad_uncertainty(
-                text.strip(), f"is a part of the value, which means nothing in {unit.symbol}", hint, offset
-            )
+            why = f"is a part of the value, which means nothing in {unit.symbol}"
+            raise bad_uncertainty(text.strip(), why, "Write the limits in the unit of the value.", offset)
         part = find_unit(own, ("number",))
         return abs(value) * _scaled(number, power, part) if part else nan
     return _limits_with_unit(text, number, power, own, unit, offset)
@@ -173,7 +179,7 @@ def _limits(text: str, form: re.Match[str], unit: Unit, value: float) -> float:
 
 def _limits_with_unit(text: str, number: str, power: str | None, own: str, unit: Unit, offset: int) -> float:
     """`10 MHz \u00b1 50 kHz`, `-30 dBm \u00b1 0.5 dB`, `25 degC \u00b1 2 K`."""
-    accepted = (unit.dimension,)
+    accepted: tuple[str, ...] = (unit.dimension,)
     if unit.dimension in DECIBEL_DIMENSIONS:
         accepted = (unit.dimension, "ratio")
     elif unit.dimension in ("temperature", "noise_temperature"):
@@ -247,18 +253,18 @@ def level_dbm(quantity: Quantity, impedance_ohm: float) -> tuple[float, float | 
     if quantity.dimension == "level":
         return quantity.value, quantity.u
     if quantity.dimension == "power":
-        return _dbm(quantity.value * 1e3, quantity.value, quantity.u, 10.0)
+        return _dbm(quantity, 10.0, 0.0)
     if not impedance_ohm > 0:
         return nan, None
     if quantity.dimension == "voltage_level":
         return quantity.value - 90.0 - 10.0 * log10(impedance_ohm), quantity.u
     if quantity.dimension == "voltage":
-        volts = quantity.value
-        return _dbm(volts / impedance_ohm * volts * 1e3, volts, quantity.u, 20.0)
+        return _dbm(quantity, 20.0, 10.0 * log10(impedance_ohm))
     raise ValueError(f"a {quantity.dimension} has no level")
 
 
-def _dbm(milliwatts: float, value: float, u: float | None, decibels: float) -> tuple[float, float | None]:
-    if not milliwatts > 0:
+def _dbm(quantity: Quantity, decibels: float, below_db: float) -> tuple[float, float | None]:
+    if not quantity.value > 0:
         return nan, None
-    return 10.0 * log10(milliwatts), None if u is None else decibels / 2.302585092994046 * u / abs(value)
+    u = None if quantity.u is None else decibels / log(10.0) * quantity.u / quantity.value
+    return decibels * log10(quantity.value) + 30.0 - below_db, u

@@ -1,6 +1,6 @@
 """The closed table of units: what may stand behind a number, what it measures, and how it becomes the base unit.
 
-SI prefixes are case sensitive. `u`, U+00B5 and U+03BC all mean micro; `ohm`, `Ohm`, U+03A9 and U+2126 are the same unit.
+SI prefixes are case sensitive. `u`, U+00B5 and U+03BC all mean micro; `ohm`, `Ohm`, U+03A9 and U+2126 are one unit.
 A text such as `K` stands in the table once for each dimension it can have.
 """
 
@@ -80,14 +80,15 @@ PREFIXES = {"f": -15, "p": -12, "n": -9, "u": -6, "m": -3, "": 0, "k": 3, "M": 6
 ABSOLUTE_ZERO_C = -273.15
 
 # ISO 4217, the codes of currencies in use.
-CURRENCIES = frozenset(
-    """AED AFN ALL AMD AOA ARS AUD AWG AZN BAM BBD BDT BGN BHD BIF BMD BND BOB BRL BSD BTN BWP BYN BZD CAD CDF CHF CLP
+_CODES = """
+    AED AFN ALL AMD AOA ARS AUD AWG AZN BAM BBD BDT BGN BHD BIF BMD BND BOB BRL BSD BTN BWP BYN BZD CAD CDF CHF CLP
     CNY COP CRC CUP CVE CZK DJF DKK DOP DZD EGP ERN ETB EUR FJD FKP GBP GEL GHS GIP GMD GNF GTQ GYD HKD HNL HTG HUF IDR
     ILS INR IQD IRR ISK JMD JOD JPY KES KGS KHR KMF KPW KRW KWD KYD KZT LAK LBP LKR LRD LSL LYD MAD MDL MGA MKD MMK MNT
     MOP MRU MUR MVR MWK MXN MYR MZN NAD NGN NIO NOK NPR NZD OMR PAB PEN PGK PHP PKR PLN PYG QAR RON RSD RUB RWF SAR SBD
     SCR SDG SEK SGD SHP SLE SOS SRD SSP STN SVC SYP SZL THB TJS TMT TND TOP TRY TTD TWD TZS UAH UGX USD UYU UZS VES VND
-    VUV WST XAF XCD XOF XPF YER ZAR ZMW ZWG""".split()
-)
+    VUV WST XAF XCD XOF XPF YER ZAR ZMW ZWG
+"""
+CURRENCIES = frozenset(_CODES.split())
 
 # dimension: the ways to write its base unit that take SI prefixes
 _PREFIXED = {
@@ -201,7 +202,7 @@ _WORDS = {
 
 
 def find_unit(text: str, wanted: tuple[str, ...] = ()) -> Unit | None:
-    """The unit of this text: in the first of the `wanted` dimensions it can have, else in the first it can have at all."""
+    """The unit of this text, in the first of the `wanted` dimensions it can have, else in any it can have."""
     known = _UNITS.get(text)
     if known is None:
         return None

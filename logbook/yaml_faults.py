@@ -68,15 +68,16 @@ def _involved(complaint: Complaint) -> list[int]:
 
 
 def _tab(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
-    for number in _involved(complaint):
-        found = _INDENT.match(_line(lines, number))
-        if found and _line(lines, number).strip():
-            what = "A tab" if "\t" in found[1] else "A space of an unusual sort"
-            spot = Spot(number, found.start(1))
-            return Fault(
-                spot, SYNTAX, f"{what} stands in the indentation of this line.", "Indent with plain spaces only."
-            )
-    return None
+    return next((fault for fault in (_odd_indent(number, lines) for number in _involved(complaint)) if fault), None)
+
+
+def _odd_indent(number: int, lines: Sequence[str]) -> Fault | None:
+    found = _INDENT.match(_line(lines, number))
+    if not found or not _line(lines, number).strip():
+        return None
+    what = "A tab" if "\t" in found[1] else "A space of an unusual sort"
+    message = f"{what} stands in the indentation of this line."
+    return Fault(Spot(number, found.start(1)), SYNTAX, message, "Indent with plain spaces only.")
 
 
 def _open_quote(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
@@ -88,14 +89,18 @@ def _open_quote(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
         hint = (
             "Within double quotes a backslash begins a sequence such as \\n; use single quotes for a plain backslash."
         )
-        return Fault(complaint.spot, SYNTAX, "The backslash here begins no sequence that YAML knows.", hint)
+        # The two parsers stop at the backslash, or behind it.
+        here = complaint.spot.column
+        behind = _line(lines, complaint.spot.line)[here : here + 1] != "\\"
+        spot = Spot(complaint.spot.line, max(here - behind, 0))
+        return Fault(spot, SYNTAX, "The backslash here begins no sequence that YAML knows.", hint)
     message = f"The quote ({quote}) that opens here is not closed."
     return Fault(since, SYNTAX, message, "Close it at the end of the text.")
 
 
 def _reserved(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
     """`note: @home`, `limit: > 6 dB`, `note: *important*`: a character that YAML keeps for itself begins a text."""
-    signs = ("cannot start any token", "alphabetic", "comment or line break", "chomping", "tag", "URI", "directive")
+    signs = ("cannot start any token", "alphabetic", "line break", "chomping", "tag", "URI", "directive")
     if not any(sign in complaint.said for sign in signs):
         return None
     for number in _involved(complaint):
@@ -112,16 +117,22 @@ def _space_after_colon(complaint: Complaint, lines: Sequence[str]) -> Fault | No
     if "could not find expected ':'" not in complaint.said or complaint.since is None:
         return None
     since = complaint.since
-    for number in (since.line, complaint.spot.line):
-        found = _NO_SPACE.fullmatch(_line(lines, number))
-        if found:
-            spot = Spot(number, found.start("value"))
-            message = f"A space is missing behind the colon in '{found['text'].strip()}'."
-            return Fault(spot, SYNTAX, message, f"Write '{found['key']}: {found['value'].strip()}'.")
+    fault = _no_space(since.line, lines) or _no_space(complaint.spot.line, lines)
+    if fault:
+        return fault
     said = _line(lines, since.line).strip()
     return Fault(
         since, SYNTAX, f"'{said}' is no key with a value.", "Write 'key: value', with a space behind the colon."
     )
+
+
+def _no_space(number: int, lines: Sequence[str]) -> Fault | None:
+    found = _NO_SPACE.fullmatch(_line(lines, number))
+    if not found:
+        return None
+    message = f"A space is missing behind the colon in '{found['text'].strip()}'."
+    hint = f"Write '{found['key']}: {found['value'].strip()}'."
+    return Fault(Spot(number, found.start("value")), SYNTAX, message, hint)
 
 
 def _second_colon(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
@@ -133,6 +144,10 @@ def _second_colon(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
         value = found["value"].strip()
         message = f"A second colon stands in the value of '{found['key'].strip()}'."
         return Fault(Spot(number, found.start("value")), SYNTAX, message, f"Write it in quotes: {_quoted(value)}.")
+    above = next((n for n in range(number - 1, -1, -1) if _line(lines, n).strip()), number)
+    fault = _odd_indent(above, lines) or _no_space(above, lines)
+    if fault:
+        return fault
     text = _line(lines, number)
     spot = Spot(number, len(text) - len(text.lstrip()))
     hint = "Indent the keys of one mapping alike, and give the key above them either a value or keys of its own."
@@ -140,7 +155,7 @@ def _second_colon(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
 
 
 def _dash(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
-    if "block sequence entries are not allowed" not in complaint.said:
+    if "sequence entries are not allowed" not in complaint.said:
         return None
     message = "The '- ' here begins a list within a line."
     hint = "A minus sign has no space behind it; the items of a list stand in lines of their own, or in [ ]."
@@ -174,18 +189,28 @@ def _brackets(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
 
 
 def _by_what_was_said(complaint: Complaint, lines: Sequence[str]) -> Fault:
-    number = complaint.spot.line
+    number, column = complaint.spot.line, complaint.spot.column
     text = _line(lines, number)
     said = text.strip()
     start = Spot(number, len(text) - len(text.lstrip()))
-    if "expected key" in complaint.said or "<block end>" in complaint.said or "'-' indicator" in complaint.said:
-        if "sequence" not in complaint.doing and said.startswith("- "):
-            return Fault(
-                start, SYNTAX, "An item of a list stands among keys.", "Indent it below the key it belongs to."
-            )
-        message = f"'{said}' does not fit the lines above it."
-        return Fault(start, SYNTAX, message, "Indent the keys of one mapping, and the dashes of one list, alike.")
+    if "node content" in complaint.said and text[column : column + 1] in ("}", "]", ","):
+        message = f"The '{text[column]}' here does not belong to any opening bracket."
+        return Fault(complaint.spot, SYNTAX, message, "Take it out, or put the text in quotes.")
+    if any(sign in complaint.said for sign in ("expected key", "<block end>", "'-' indicator")):
+        return _misfit(said, start, complaint.doing)
+    if "<document start>" in complaint.said:
+        message = f"'{said}' stands behind the end of the YAML."
+        return Fault(start, "several-documents", message, "Take the line '...' out.")
     where = f" near '{said}'" if said else ""
-    return Fault(
-        complaint.spot, SYNTAX, f"This is no YAML{where}: {complaint.said}.", "Put the text in quotes if it is one."
-    )
+    message = f"This is no YAML{where}: {complaint.said}."
+    return Fault(complaint.spot, SYNTAX, message, "Put the text in quotes if it is one.")
+
+
+def _misfit(said: str, start: Spot, doing: str) -> Fault:
+    if said.startswith(":"):
+        return Fault(start, SYNTAX, "A key is missing before the colon.", "Write 'key: value'.")
+    if "sequence" not in doing and "collection" not in doing and said.startswith("- "):
+        message = "An item of a list stands among keys."
+        return Fault(start, SYNTAX, message, "Indent it as the list's other items, below the key it belongs to.")
+    message = f"'{said}' does not fit the lines above it."
+    return Fault(start, SYNTAX, message, "Indent the keys of one mapping, and the dashes of one list, alike.")

@@ -55,8 +55,8 @@ _CONTROL = re.compile(r"[^\t\n\x20-\x7e\x85\xa0-\ud7ff\ue000-\ufefe\uff00-\ufffd
 # YAML 1.1 ends a line at these three, an editor does not: as spaces they leave the lines true.
 _LINE_ENDS = str.maketrans("\x85\u2028\u2029", "   ")
 
-# `limit: >= 6 dB` is what one writes, but a '>' at the start begins a folded text. A stand-in of the same width takes its
-# place while YAML is read; no folded text begins with '>=', so nothing else changes.
+# `limit: >= 6 dB` is what one writes, but a '>' at the start begins a folded text. A stand-in of the same width takes
+# its place while YAML is read; no folded text begins with '>=', so nothing else changes.
 _AT_LEAST = re.compile(r"(?<![^\s:\[{,-])>(?==)")
 _STAND_IN = "\ue000"
 
@@ -72,8 +72,9 @@ def read_yaml(
 ) -> Node | None:
     """The nodes of a YAML text that begins in `first_line` of a file and has lost `indent` columns.
 
-    None when it is empty, or too broken to be used; the fault is then in `problems`. A key given twice, a tag and an anchor are
-    reported too, but the nodes are returned (with the key's first value), so that other faults are found in the same run.
+    None when it is empty, or too broken to be used; the fault is then in `problems`. A key given twice, a tag and an
+    anchor are reported too, but the nodes are returned (with the key's first value), so that other faults are found in
+    the same run.
     """
     return _Reader(file, first_line, indent, problems, what).read(text)
 
@@ -118,7 +119,8 @@ class _Reader:
     def _document(self) -> Node | None:
         self._next()
         if type(self._next()) is yaml.StreamEndEvent:
-            return self._empty()
+            self._empty()
+            return None
         node = self._node(self._next(), 0)
         self._next()
         event = self._next()
@@ -126,7 +128,7 @@ class _Reader:
             message = f"A second document begins here; a {self._what} holds one."
             self._fault(self._place(event.start_mark), "several-documents", message, "Take the line '---' out.")
         if type(node) is Scalar and not node.text:
-            return self._empty()
+            self._empty()
         return node
 
     def _node(self, event: Any, depth: int) -> Node:

@@ -4,10 +4,9 @@ from __future__ import annotations
 
 import codecs
 import re
-from bisect import bisect_right
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
-from itertools import accumulate, islice
+from itertools import islice
 
 from logbook.problems import Place, Problems
 
@@ -40,11 +39,9 @@ class EntryText:
     lines: tuple[str, ...]
 
 
-# A line that may open or close a fence, or the start of a comment. A list's marker may stand before a fence.
-_MARK = re.compile(
-    r"^(?P<prefix>[ \t>]*)(?P<marker>(?:[-*+]|[0-9]{1,9}[.)])[ \t]+)?(?P<run>`{3,}|~{3,})(?P<info>[^\n]*)$|<!--",
-    re.MULTILINE,
-)
+# What a fence holds, or what a comment begins with; then the line of a fence, where a list's marker may stand ahead.
+_HIT = re.compile(r"```|~~~|<!--")
+_FENCE = re.compile(r"([ \t>]*)((?:[-*+]|[0-9]{1,9}[.)])[ \t]+)?(`{3,}|~{3,})([^\n]*)")
 _KIND = re.compile(r"yaml[ \t]+([A-Za-z][A-Za-z0-9_-]*)")
 _KIND_AND_MORE = re.compile(r"yaml[ \t]+[A-Za-z][A-Za-z0-9_-]*[ \t]+\S.*")
 _FRONT_START = re.compile(r"---[ \t]*")
@@ -144,7 +141,7 @@ def _front_end(lines: list[str], path: str, problems: Problems) -> int:
 
 def _fences(text: str, lines: Sequence[str], start: int, path: str, problems: Problems) -> Iterator[tuple[Fence, str]]:
     """The fences of blocks from line `start` on, each with what stands before it in its line."""
-    marks = _marks(text, lines)
+    marks = _marks(text)
     free_from = start
     comment_end = 0
     for number, mark in enumerate(marks):
@@ -163,18 +160,22 @@ def _fences(text: str, lines: Sequence[str], start: int, path: str, problems: Pr
                 free_from = end
 
 
-def _marks(text: str, lines: Sequence[str]) -> list[_Mark]:
-    starts = list(accumulate((len(line) + 1 for line in lines), initial=0))
-    found = []
-    for match in _MARK.finditer(text):
-        start = match.start()
-        line = bisect_right(starts, start) - 1
-        if match["run"] is None:
+def _marks(text: str) -> list[_Mark]:
+    found: list[_Mark] = []
+    line, counted, line_end = 0, 0, 0
+    for hit in _HIT.finditer(text):
+        start = hit.start()
+        if start < line_end:
+            continue
+        line_start = text.rfind("\n", 0, start) + 1
+        line += text.count("\n", counted, start)
+        counted = start
+        if hit[0] == "<!--":
             found.append(_Mark(start, line))
-        else:
-            found.append(
-                _Mark(start, line, match["prefix"], match["marker"] or "", match["run"], match["info"].strip())
-            )
+        elif fence := _FENCE.match(text, line_start):
+            prefix, marker, run, info = fence.groups()
+            found.append(_Mark(line_start, line, prefix, marker or "", run, info.strip()))
+            line_end = fence.end()
     return found
 
 

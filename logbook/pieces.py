@@ -256,9 +256,7 @@ class Download:
     content: str
 
 
-Piece = (
-    Heading | Text | Note | Items | Table | Picture | Diagram | Tree | Cards | Written | Folded | Download
-)
+Piece = Heading | Text | Note | Items | Table | Picture | Diagram | Tree | Cards | Written | Folded | Download
 
 
 @dataclass(frozen=True, slots=True)

@@ -7,6 +7,15 @@ from dataclasses import dataclass
 from typing import Any
 
 import yaml
+from yaml.events import (
+    AliasEvent,
+    MappingEndEvent,
+    MappingStartEvent,
+    ScalarEvent,
+    SequenceEndEvent,
+    SequenceStartEvent,
+    StreamEndEvent,
+)
 
 from logbook.problems import Place, Problems
 from logbook.yaml_faults import Complaint, Spot, explain
@@ -88,7 +97,7 @@ class _Reader:
         self._what = what
         self._unusable = False
         self._restore = False
-        self._events: Any = None
+        self._next: Any = None
 
     def read(self, text: str) -> Node | None:
         text = text.translate(_LINE_ENDS)
@@ -99,7 +108,8 @@ class _Reader:
         if ">=" in text and _STAND_IN not in text:
             text, count = _AT_LEAST.subn(_STAND_IN, text)
             self._restore = count > 0
-        self._events = _LOADER(text)
+        events = _LOADER(text)
+        self._next = events.get_event
         try:
             node = self._document()
         except _BrokenError:
@@ -108,23 +118,20 @@ class _Reader:
             self._report_syntax(error, text)
             return None
         finally:
-            self._events.dispose()
+            events.dispose()
         return None if self._unusable else node
 
     # --- events --------------------------------------------------------------------------------
 
-    def _next(self) -> Any:
-        return self._events.get_event()
-
     def _document(self) -> Node | None:
         self._next()
-        if type(self._next()) is yaml.StreamEndEvent:
+        if type(self._next()) is StreamEndEvent:
             self._empty()
             return None
         node = self._node(self._next(), 0)
         self._next()
         event = self._next()
-        if type(event) is not yaml.StreamEndEvent:
+        if type(event) is not StreamEndEvent:
             message = f"A second document begins here; a {self._what} holds one."
             self._fault(self._place(event.start_mark), "several-documents", message, "Take the line '---' out.")
         if type(node) is Scalar and not node.text:
@@ -133,10 +140,10 @@ class _Reader:
 
     def _node(self, event: Any, depth: int) -> Node:
         sort = type(event)
-        if sort is yaml.ScalarEvent:
+        if sort is ScalarEvent:
             return self._scalar(event)
         place = self._place(event.start_mark)
-        if sort is yaml.AliasEvent:
+        if sort is AliasEvent:
             message = f"'*{event.anchor}' is an alias; a {self._what} does without."
             self._fault(place, "yaml-alias", message, "Write the value out, or quote a text that begins with '*'.")
             return Scalar("", place)
@@ -145,17 +152,17 @@ class _Reader:
             self._fault(place, "yaml-depth", message, "Close the brackets of an outer one first.")
             raise _BrokenError
         self._refuse_extras(event, place)
-        if sort is yaml.MappingStartEvent:
+        if sort is MappingStartEvent:
             return self._mapping(place, depth + 1)
         items = []
-        while type(event := self._next()) is not yaml.SequenceEndEvent:
+        while type(event := self._next()) is not SequenceEndEvent:
             items.append(self._node(event, depth + 1))
         return Sequence(tuple(items), place)
 
     def _scalar(self, event: Any) -> Scalar:
         mark = event.start_mark
         column = mark.column + self._column
-        if event.style and event.style in "'\"" and event.end_mark.line == mark.line:
+        if event.style in ("'", '"') and event.end_mark.line == mark.line:
             # The text's own place, so that a fault within it is shown where it stands.
             column += 1
         place = Place(self._file, self._first_line + mark.line, column)
@@ -166,28 +173,29 @@ class _Reader:
 
     def _mapping(self, place: Place, depth: int) -> Mapping:
         pairs: dict[str, tuple[Scalar, Node]] = {}
-        while type(event := self._next()) is not yaml.MappingEndEvent:
+        while type(event := self._next()) is not MappingEndEvent:
             key = self._node(event, depth)
             if type(key) is not Scalar:
                 message = "A key that is a list or a mapping itself stands here."
                 self._fault(key.place, "complex-key", message, "A key is a single word; quote a text in brackets.")
                 self._skip(self._next())
                 continue
-            if type(event) is yaml.ScalarEvent and self._is_merge_key(event, key):
+            if key.text == "<<" and self._is_merge_key(event):
                 continue
             value = self._node(self._next(), depth)
-            self._look_for_colon(key, value)
+            if ":" in key.text:
+                self._look_for_colon(key, value)
             first = pairs.setdefault(key.text, (key, value))
             if first[0] is not key:
                 message = f"The key '{key.text}' is given twice; first in line {first[0].place.line}."
                 self._problems.add(key.place, "duplicate-key", message, "Keep one of the two.")
         return Mapping(tuple(pairs.values()), place)
 
-    def _is_merge_key(self, event: Any, key: Scalar) -> bool:
-        if key.text != "<<" or event.style:
+    def _is_merge_key(self, event: Any) -> bool:
+        if type(event) is not ScalarEvent or event.style:
             return False
         message = f"'<<' merges another mapping in; a {self._what} does without."
-        self._fault(key.place, "merge-key", message, "Write the keys out.")
+        self._fault(self._place(event.start_mark), "merge-key", message, "Write the keys out.")
         self._skip(self._next())
         return True
 
@@ -203,8 +211,8 @@ class _Reader:
         depth = 0
         while True:
             sort = type(event)
-            depth += sort in (yaml.MappingStartEvent, yaml.SequenceStartEvent)
-            depth -= sort in (yaml.MappingEndEvent, yaml.SequenceEndEvent)
+            depth += sort in (MappingStartEvent, SequenceStartEvent)
+            depth -= sort in (MappingEndEvent, SequenceEndEvent)
             if depth <= 0:
                 return
             event = self._next()

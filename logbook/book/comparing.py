@@ -1,0 +1,117 @@
+"""All findings of a book: deltas, agreement, targets, regressions, spreads and open items."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+
+from logbook.book.history import History
+from logbook.compare.agreement import agreement
+from logbook.compare.deltas import by_key, measured_deltas, predicted_deltas
+from logbook.compare.regressions import regressions, spreads
+from logbook.compare.targets import judge_target
+from logbook.compare.verdicts import Rules
+from logbook.findings import Delta, Findings, TargetVerdict, Todo
+from logbook.hardware import Chain
+from logbook.model import PLANNED, PREDICTED, Result
+from logbook.prediction import Prediction, Terms
+from logbook.problems import Problems, did_you_mean
+from logbook.revision import Revision
+
+Predict = Callable[[Chain, Terms], Prediction]
+
+
+def compare_all(
+    history: History, results: Sequence[Result], predict: Predict, rules: Rules, problems: Problems
+) -> Findings:
+    """Compare everything with everything that it may be compared with."""
+    measured = [r for r in results if r.basis != PREDICTED]
+    own: dict[str, dict[str, list[Result]]] = {}
+    for label in history.revisions:
+        own[label] = by_key(r for r in measured if r.revision == label)
+    findings = Findings(todo=_todo(history, problems))
+    for label, revision in history.revisions.items():
+        findings.deltas += deltas_of(revision, history, own, predict, rules)
+        findings.spreads += spreads(own[label], rules)
+    for result in measured:
+        chain = _chain_of(result, history)
+        found = agreement(result, chain, predict, rules) if chain is not None else None
+        if found is not None:
+            findings.agreement.append(found)
+    findings.targets = _targets(history, own, predict, rules)
+    findings.regressions = regressions(
+        findings.deltas,
+        {label: findings.targets_of(label) for label in history.revisions},
+        {label: [a.label for a in history.ancestors(label)] for label, r in history.revisions.items() if r.built},
+        history.accepts,
+        problems,
+    )
+    return findings
+
+
+def _chain_of(result: Result, history: History) -> Chain | None:
+    revision = history.revisions.get(result.revision)
+    return None if revision is None else revision.chains.get(result.chain)
+
+
+def deltas_of(
+    revision: Revision,
+    history: History,
+    own: dict[str, dict[str, list[Result]]],
+    predict: Predict,
+    rules: Rules,
+) -> list[Delta]:
+    """The predicted and measured deltas of a revision against its parent and ancestors."""
+    ancestors = history.ancestors(revision.label)
+    if not ancestors:
+        return []
+    parent = ancestors[0]
+    found: list[Delta] = []
+    for name, chain in revision.chains.items():
+        before = parent.chains.get(name)
+        if before is not None:
+            found += predicted_deltas(
+                predict(before, Terms()), predict(chain, Terms()), parent.label, revision.label, rules
+            )
+    if revision.state != PLANNED:
+        lines = [(each.label, own[each.label]) for each in ancestors]
+        found += measured_deltas(own[revision.label], lines, revision.label, rules)
+    return found
+
+
+def _targets(
+    history: History, own: dict[str, dict[str, list[Result]]], predict: Predict, rules: Rules
+) -> list[TargetVerdict]:
+    found: list[TargetVerdict] = []
+    by_revision: dict[tuple[str, str], TargetVerdict] = {}
+    flat = {label: [r for each in keys.values() for r in each] for label, keys in own.items()}
+    for label, revision in history.revisions.items():
+        ancestors = history.ancestors(label)
+        parent = ancestors[0] if ancestors else None
+        for target in history.targets.values():
+            before = by_revision.get((parent.label, target.key)) if parent is not None else None
+            chains = parent.chains if parent is not None else {}
+            verdict = judge_target(target, revision, flat[label], before, predict, chains, rules)
+            by_revision[(label, target.key)] = verdict
+            found.append(verdict)
+    return found
+
+
+def _todo(history: History, problems: Problems) -> list[Todo]:
+    items: dict[str, Todo] = {}
+    for entry, words in history.todo:
+        for name, what, place in words.opens:
+            if name in items:
+                message = f"An item '{name}' was opened already in {items[name].opened}."
+                problems.add(place, "duplicate-item", message, "Give the new item an id of its own.")
+                continue
+            items[name] = Todo(name, what, entry.path, place)
+        for name, place in words.closes:
+            known = items.get(name)
+            if known is None:
+                message = f"No item '{name}' was opened up to {entry.date}."
+                problems.add(place, "unknown-item", message, did_you_mean(name, items))
+            elif known.closed is not None:
+                problems.add(place, "closed-twice", f"Item '{name}' was closed already in {known.closed}.")
+            else:
+                items[name] = Todo(name, known.what, known.opened, known.place, entry.path)
+    return list(items.values())

@@ -1,0 +1,222 @@
+"""Deltas: measured ones between readings on equal terms, predicted ones between the totals of two chains."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from math import isnan, sqrt
+
+from logbook.compare.equal import in_rbw, why_not_comparable
+from logbook.compare.verdicts import GONE, NEW, NOT_COMPARABLE, NOT_STATED, SAME, Rules, delta_verdict
+from logbook.findings import BudgetRow, Delta
+from logbook.model import PREDICTED, Parts, Result, Source, result_key, standard_uncertainty
+from logbook.physics.uncertainty import difference
+from logbook.prediction import Estimate, Prediction
+from logbook.quantities import Better, known_quantity
+
+ByKey = Mapping[str, Sequence[Result]]
+
+# A part that is left of a difference by rounding alone (in the number's own unit, relative to what cancelled).
+_CANCELLED = 1e-9
+
+
+def by_key(results: Iterable[Result]) -> dict[str, list[Result]]:
+    """Results by their key, each key's in the order given."""
+    found: dict[str, list[Result]] = {}
+    for result in results:
+        found.setdefault(result.key, []).append(result)
+    return found
+
+
+def best_pair(before: Sequence[Result], after: Sequence[Result]) -> tuple[Result, Result, str]:
+    """The pair to compare: on equal terms if there is one, on the same bench if there is one, the latest ones."""
+
+    def rank(pair: tuple[int, int]) -> tuple[bool, bool, int, int]:
+        old, new = before[pair[0]], after[pair[1]]
+        one, other = old.conditions, new.conditions
+        same_bench = (one.bench, one.bench_from) == (other.bench, other.bench_from)
+        return not why_not_comparable(old, new), same_bench, pair[1], pair[0]
+
+    best = max(((i, j) for i in range(len(before)) for j in range(len(after))), key=rank)
+    old, new = before[best[0]], after[best[1]]
+    return old, new, why_not_comparable(old, new)
+
+
+def measured_delta(before: Result, after: Result, why: str, rules: Rules, to: str = "", from_: str = "") -> Delta:
+    """The difference of two results of one key; levels of noise in the later reading's bandwidth."""
+    rbw = after.conditions.rbw_hz
+    old, new = in_rbw(before, rbw), after.value
+    parts = difference(after.parts, before.parts)
+    # Where all that was stated cancels, what is fresh in each reading was not stated at all.
+    u = _left(parts, after.parts, before.parts) or None
+    change = new - old
+    stated = u is not None
+    smallest = rules.smallest(after.quantity, after.unit, old)
+    verdict, said = _judge(before, after, old, new, u, smallest, why, rules)
+    return Delta(
+        key=after.key,
+        quantity=after.quantity,
+        chain=after.chain,
+        at_hz=after.at_hz,
+        name=after.name,
+        from_=from_ or before.revision,
+        to=to or after.revision,
+        basis=after.basis,
+        before=old,
+        after=new,
+        delta=float("nan") if verdict == NOT_COMPARABLE else change,
+        unit=after.unit,
+        u=u,
+        verdict=verdict,
+        why=said,
+        better=after.better,
+        stated=stated,
+        budget=budget(before.parts, after.parts),
+        before_result=before,
+        after_result=after,
+    )
+
+
+def _judge(
+    before: Result, after: Result, old: float, new: float, u: float | None, smallest: float, why: str, rules: Rules
+) -> tuple[str, str]:
+    if why:
+        return NOT_COMPARABLE, why
+    if before.bound or after.bound:
+        return _bounded(before, after, old, new, u, smallest, rules)
+    verdict = delta_verdict(old, new, u, smallest, after.better, rules.coverage)
+    return verdict, "" if u is not None else NOT_STATED
+
+
+def _bounded(
+    before: Result, after: Result, old: float, new: float, u: float | None, smallest: float, rules: Rules
+) -> tuple[str, str]:
+    """With an upper bound on the later side a fall beyond doubt still counts; anything else cannot be told."""
+    if after.bound == "upper" and not before.bound:
+        verdict = delta_verdict(old, new, u, smallest, after.better, rules.coverage)
+        if new < old and verdict != SAME:
+            return verdict, "at least: the later reading is an upper bound"
+    silent = after if after.bound else before
+    words = f"{silent.revision} is only known to be at most so high: it stands within 1 dB of its bench's own noise"
+    return NOT_COMPARABLE, words + "; read it again behind less loss or with a quieter instrument"
+
+
+def _left(parts: Parts | None, after: Parts | None, before: Parts | None) -> float | None:
+    """u of a difference: None where nothing was stated, zero where all that was stated cancels."""
+    if parts is None:
+        return None
+    scale = sqrt(sum(p * p for side in (after, before) for p in (side or {}).values()))
+    u = standard_uncertainty(parts) or 0.0
+    return 0.0 if u <= _CANCELLED * scale else u
+
+
+def budget(before: Parts | None, after: Parts | None) -> tuple[BudgetRow, ...]:
+    """Each source's share in the doubt of a difference; a source on both sides cancels."""
+    rows = []
+    old, new = before or {}, after or {}
+    for source in dict.fromkeys([*new, *old]):
+        one, other = old.get(source, 0.0), new.get(source, 0.0)
+        left = other - one
+        shared = source in old and source in new
+        cancelled = shared and abs(left) <= _CANCELLED * max(abs(one), abs(other))
+        sensitivity = 1.0 if source in new and source not in old else -1.0 if source not in new else 0.0
+        rows.append(BudgetRow(source, abs(left), sensitivity, cancelled, abs(one), abs(other)))
+    return tuple(sorted(rows, key=lambda row: (row.cancelled, -row.u)))
+
+
+def measured_deltas(own: ByKey, ancestors: Sequence[tuple[str, ByKey]], label: str, rules: Rules) -> list[Delta]:
+    """A revision's measured results against the nearest ancestor that has each; new ones, and ones not read again."""
+    found: list[Delta] = []
+    for key, results in own.items():
+        old = next((results_of[key] for _, results_of in ancestors if key in results_of), None)
+        if old is not None:
+            before, after, why = best_pair(old, results)
+            found.append(measured_delta(before, after, why, rules, to=label))
+        elif ancestors:
+            found.append(_one_sided(results[-1], label, ancestors[0][0], NEW))
+    if own and ancestors:
+        parent, results_of = ancestors[0]
+        found += [_one_sided(old[-1], label, parent, GONE) for key, old in results_of.items() if key not in own]
+    return found
+
+
+def _one_sided(result: Result, label: str, parent: str, verdict: str) -> Delta:
+    nan = float("nan")
+    new = verdict == NEW
+    why = f"not read on {parent}" if new else f"not read on {label} yet"
+    return Delta(
+        key=result.key,
+        quantity=result.quantity,
+        chain=result.chain,
+        at_hz=result.at_hz,
+        name=result.name,
+        from_=parent,
+        to=label,
+        basis=result.basis,
+        before=nan if new else result.value,
+        after=result.value if new else nan,
+        delta=nan,
+        unit=result.unit,
+        u=None,
+        verdict=verdict,
+        why=why,
+        better=result.better,
+        before_result=None if new else result,
+        after_result=result if new else None,
+    )
+
+
+def predicted_deltas(before: Prediction, after: Prediction, from_: str, to: str, rules: Rules) -> list[Delta]:
+    """Every total of a chain against the same total of another; what both owe to one tolerance cancels."""
+    found = []
+    for name in dict.fromkeys([*after.totals, *before.totals]):
+        old, new = before.totals.get(name), after.totals.get(name)
+        delta = _predicted(name, after.chain.name, old, new, from_, to, rules)
+        if delta is not None:
+            found.append(delta)
+    return found
+
+
+def _predicted(
+    name: str, chain: str, old: Estimate | None, new: Estimate | None, from_: str, to: str, rules: Rules
+) -> Delta | None:
+    nan = float("nan")
+    one, other = (nan if each is None else each.value for each in (old, new))
+    if isnan(one) and isnan(other):
+        return None
+    known = known_quantity(name)
+    better: Better = known.better if known else "neither"
+    unit = (new or old).unit  # type: ignore[union-attr]
+    old_parts, new_parts = (None if each is None else each.parts for each in (old, new))
+    u = _left(difference(new_parts, old_parts), new_parts, old_parts)
+    if isnan(one):
+        verdict, why = NEW, f"not known on {from_}: {old.words if old else 'not asked for'}"
+    elif isnan(other):
+        verdict, why = GONE, f"not known on {to}: {new.words if new else 'not asked for'}"
+    else:
+        verdict = delta_verdict(one, other, u, rules.smallest(name, unit, one), better, rules.coverage)
+        why = "" if u is not None else NOT_STATED
+    return Delta(
+        key=result_key(chain, name),
+        quantity=name,
+        chain=chain,
+        at_hz=None,
+        name="",
+        from_=from_,
+        to=to,
+        basis=PREDICTED,
+        before=one,
+        after=other,
+        delta=other - one,
+        unit=unit,
+        u=u,
+        verdict=verdict,
+        why=why,
+        better=better,
+        stated=u is not None,
+        budget=budget(old_parts, new_parts),
+    )
+
+
+def sources_of(parts: Parts | None) -> list[Source]:
+    """The sources of a doubt, largest first."""
+    return sorted(parts or {}, key=lambda source: -abs((parts or {})[source]))

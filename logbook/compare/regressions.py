@@ -1,0 +1,112 @@
+"""Regressions, and which of them are accepted; repeated readings that spread beyond their doubt."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass
+
+from logbook.compare.deltas import measured_delta
+from logbook.compare.equal import why_not_comparable
+from logbook.compare.verdicts import MEETS, MISSES, NOT_COMPARABLE, SAME, WORSE, Rules
+from logbook.findings import Accept, Delta, Regression, Spread, TargetVerdict
+from logbook.model import PREDICTED, Result
+from logbook.problems import Problems, did_you_mean
+
+
+def regressions(
+    deltas: Iterable[Delta],
+    targets: Mapping[str, Sequence[TargetVerdict]],
+    lines: Mapping[str, Sequence[str]],
+    accepts: Sequence[Accept],
+    problems: Problems,
+) -> list[Regression]:
+    """What got worse: measured deltas beyond doubt, targets met before and missed now, each with its acceptance.
+
+    `targets` are the verdicts by revision, `lines` each built revision's ancestors, nearest first.
+    """
+    found = [
+        _Found(d.key, d.quantity, d.chain, d.at_hz, d.from_, d.to, "delta", d.delta, d.unit)
+        for d in deltas
+        if d.verdict == WORSE and d.basis != PREDICTED and d.to in lines
+    ]
+    for label, ancestors in lines.items():
+        found += _targets_lost(label, ancestors, targets)
+    used: set[int] = set()
+    done = [_with_acceptance(each, accepts, used) for each in found]
+    for index, accept in enumerate(accepts):
+        if index not in used:
+            _accepts_nothing(accept, found, problems)
+    return done
+
+
+@dataclass(frozen=True, slots=True)
+class _Found:
+    """A regression before it is known whether it is accepted."""
+
+    key: str
+    quantity: str
+    chain: str
+    at_hz: float | None
+    from_: str
+    to: str
+    kind: str
+    delta: float | None
+    unit: str
+
+
+def _targets_lost(label: str, ancestors: Sequence[str], targets: Mapping[str, Sequence[TargetVerdict]]) -> list[_Found]:
+    """Targets that the nearest ancestor with a measured verdict met, and that this revision is measured to miss."""
+    found = []
+    for now in targets.get(label, ()):
+        if now.verdict != MISSES or now.basis == PREDICTED:
+            continue
+        before = _last_measured(now.target.key, ancestors, targets)
+        if before is not None and before.verdict == MEETS:
+            t = now.target
+            change = now.value - before.value
+            found.append(_Found(t.key, t.quantity, t.chain, t.at_hz, before.revision, label, "target", change, t.unit))
+    return found
+
+
+def _last_measured(
+    key: str, ancestors: Sequence[str], targets: Mapping[str, Sequence[TargetVerdict]]
+) -> TargetVerdict | None:
+    for label in ancestors:
+        for verdict in targets.get(label, ()):
+            if verdict.target.key == key and verdict.basis != PREDICTED:
+                return verdict
+    return None
+
+
+def _covers(accept: Accept, found: _Found) -> bool:
+    same = accept.revision == found.to and accept.quantity == found.quantity
+    same = same and accept.chain in (None, found.chain)
+    return same and (accept.at_hz is None or accept.at_hz == found.at_hz)
+
+
+def _with_acceptance(found: _Found, accepts: Sequence[Accept], used: set[int]) -> Regression:
+    covering = [index for index, accept in enumerate(accepts) if _covers(accept, found)]
+    used.update(covering)
+    why = accepts[covering[0]].why if covering else ""
+    return Regression(found.key, found.from_, found.to, found.kind, found.delta, found.unit, bool(covering), why)
+
+
+def _accepts_nothing(accept: Accept, found: Sequence[_Found], problems: Problems) -> None:
+    there = sorted({each.quantity for each in found if each.to == accept.revision})
+    message = f"'{accept.quantity}' is accepted, and revision {accept.revision} has no such regression."
+    hint = did_you_mean(accept.quantity, there) if there else f"Revision {accept.revision} has no regression at all."
+    problems.add(accept.place, "accepts-nothing", message, hint)
+
+
+def spreads(results: Mapping[str, Sequence[Result]], rules: Rules) -> list[Spread]:
+    """Readings of one key within one revision that differ by more than their stated doubt allows."""
+    found = []
+    for key, repeated in results.items():
+        last = repeated[-1]
+        for first in repeated[:-1]:
+            why = why_not_comparable(first, last)
+            delta = measured_delta(first, last, why, rules)
+            if delta.verdict in (SAME, NOT_COMPARABLE) or delta.u is None:
+                continue
+            found.append(Spread(key, last.revision, first, last, delta.delta, delta.u, last.unit))
+    return found

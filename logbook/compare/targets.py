@@ -1,0 +1,109 @@
+"""Targets against revisions: by what was measured on each, else by what is predicted for it."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass
+from math import isnan
+
+from logbook.compare.equal import in_rbw
+from logbook.compare.verdicts import MEETS, NOT_STATED, UNDECIDED, Rules, target_verdict
+from logbook.findings import Target, TargetVerdict
+from logbook.hardware import Chain
+from logbook.model import MEASURED, PLANNED, PREDICTED, Result, standard_uncertainty
+from logbook.physics.uncertainty import conformity
+from logbook.prediction import Prediction, Terms
+from logbook.quantities import known_quantity
+from logbook.revision import Revision
+
+Predict = Callable[[Chain, Terms], Prediction]
+
+
+@dataclass(frozen=True, slots=True)
+class _Value:
+    """What a target is held against."""
+
+    basis: str
+    value: float
+    u: float | None
+    words: str = ""
+    bound: str = ""
+
+
+def fits(target: Target, result: Result, signal_hz: float | None) -> bool:
+    """Whether a result is the one that a target speaks of; no frequency means the chain's own signal."""
+    if (target.chain, target.quantity, target.name) != (result.chain, result.quantity, result.name):
+        return False
+    wanted = target.at_hz if target.at_hz is not None else signal_hz
+    found = result.at_hz if result.at_hz is not None else signal_hz
+    return wanted == found or (target.at_hz is None and signal_hz is None)
+
+
+def judge_target(
+    target: Target,
+    revision: Revision,
+    results: Sequence[Result],
+    parent: TargetVerdict | None,
+    predict: Predict,
+    parent_chains: Mapping[str, Chain],
+    rules: Rules,
+) -> TargetVerdict:
+    """One target against one revision. `results` are the revision's own measured ones, in order."""
+    chain = revision.chains.get(target.chain)
+    signal = chain.signal_hz if chain is not None else None
+    own = [result for result in results if fits(target, result, signal)]
+    found = _measured(target, own[-1]) if own else _predicted(target, chain, predict)
+    probability = None if isnan(found.value) else conformity(found.value, found.u, target.low, target.high)
+    verdict = target_verdict(found.value, probability, target.low, target.high)
+    why = found.words
+    if found.bound and verdict != MEETS:
+        verdict, why = UNDECIDED, "only an upper bound is known"
+    elif probability is None and not why:
+        why = NOT_STATED
+    gap = gap_of(target, found.value)
+    closes = None
+    if revision.state == PLANNED and parent is not None:
+        closes = _closes(target, chain, parent_chains.get(target.chain), parent, predict)
+    return TargetVerdict(
+        target, revision.label, found.basis, found.value, found.u, probability, verdict, why, gap, closes
+    )
+
+
+def _measured(target: Target, result: Result) -> _Value:
+    value = in_rbw(result, target.rbw_hz)
+    words = result.words
+    known = known_quantity(target.quantity)
+    if known is not None and known.noise and result.conditions.averaging == "peak":
+        return _Value(MEASURED, float("nan"), None, "a peak reading says nothing of the noise power")
+    return _Value(result.basis, value, result.u, words, result.bound)
+
+
+def _predicted(target: Target, chain: Chain | None, predict: Predict) -> _Value:
+    nan = float("nan")
+    if chain is None:
+        return _Value(PREDICTED, nan, None, "not measured, and there is no chain to predict it from")
+    estimate = predict(chain, Terms(target.at_hz, target.rbw_hz)).totals.get(target.quantity)
+    if estimate is None or target.name:
+        return _Value(PREDICTED, nan, None, "not measured yet")
+    words = f"not known: {estimate.words}" if isnan(estimate.value) else ""
+    return _Value(PREDICTED, estimate.value, standard_uncertainty(estimate.parts), words)
+
+
+def gap_of(target: Target, value: float) -> float:
+    """How much is missing to the limit: positive when missed, negative or zero when met; nan when not known."""
+    over = [] if target.high is None else [value - target.high]
+    under = [] if target.low is None else [target.low - value]
+    return max([*over, *under]) if over or under else float("nan")
+
+
+def _closes(
+    target: Target, chain: Chain | None, parent: Chain | None, before: TargetVerdict, predict: Predict
+) -> float | None:
+    """The part of the parent's remaining gap that a plan is expected to close; None where nothing is missing."""
+    if chain is None or parent is None or isnan(before.gap) or before.gap <= 0:
+        return None
+    terms = Terms(target.at_hz, target.rbw_hz)
+    old, new = (predict(each, terms).totals.get(target.quantity) for each in (parent, chain))
+    if old is None or new is None or isnan(old.value) or isnan(new.value):
+        return None
+    return 1 - gap_of(target, before.value + new.value - old.value) / before.gap

@@ -1,0 +1,103 @@
+"""Deltas, budgets and agreement as tables."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from math import isnan
+
+from logbook.findings import Agreement, Delta
+from logbook.pieces import Folded, Line, Piece, Table, Text, Verdict
+from logbook.quantity_display import show_delta, show_value
+from logbook.showing.words import change, percent, plain, reason, result_words, revision_link
+
+
+def deltas_table(deltas: Iterable[Delta], caption: str, *, chains: bool = False) -> Table:
+    """Before, after, change and verdict of each delta."""
+    rows: list[tuple[Line, ...]] = []
+    for d in deltas:
+        rows.append(
+            (
+                result_words(d.quantity, d.at_hz, d.name, d.chain if chains else ""),
+                plain(d.before, d.unit),
+                plain(d.after, d.unit),
+                change(d),
+                (Verdict(d.verdict), " ", reason(d.why)) if d.why else Verdict(d.verdict),
+            )
+        )
+    head = ("quantity", "before", "after", "change", "verdict")
+    return Table(head, tuple(rows), caption, frozenset({1, 2, 3}))
+
+
+def budget_pieces(delta: Delta, k: float) -> list[Piece]:
+    """How the doubt of a delta comes about, source by source."""
+    if not delta.budget:
+        return []
+    rows: list[tuple[Line, ...]] = []
+    for row in delta.budget:
+        said = "common to both: cancels" if row.cancelled else ""
+        rows.append(
+            (
+                row.source.words,
+                show_value(row.u_before, "dB") if row.u_before else "",
+                show_value(row.u_after, "dB") if row.u_after else "",
+                f"{row.u:.3g}",
+                said,
+            )
+        )
+    unit = delta.unit
+    head = ("source", f"u before ({delta.from_})", f"u after ({delta.to})", f"u in the change ({unit})", "")
+    table = Table(head, tuple(rows), "Where the doubt of the change comes from", frozenset({1, 2, 3}))
+    if delta.u is None:
+        total = "What was stated cancels, and what is fresh in each reading was not stated."
+    else:
+        total = f"Together u = {show_value(delta.u, unit)}; with k = {k:g}, ± {show_value(k * delta.u, unit)}."
+    return [table, Text(total)]
+
+
+def agreement_table(found: Sequence[Agreement], caption: str = "Measured against predicted") -> Table:
+    """Each reading beside the prediction for its own conditions."""
+    rows: list[tuple[Line, ...]] = []
+    for a in found:
+        en = "" if isnan(a.en) else f"{a.en:.2f}"
+        rows.append(
+            (
+                result_words(a.result.quantity, a.result.at_hz, a.result.name),
+                plain(a.measured, a.unit, a.u_measured),
+                plain(a.predicted, a.unit, a.u_predicted),
+                show_delta(a.measured - a.predicted, _difference_unit(a.unit)),
+                en,
+                (Verdict(a.verdict), " ", reason(a.why)) if a.why else Verdict(a.verdict),
+            )
+        )
+    head = ("quantity", "measured", "predicted", "difference", "E_n", "verdict")
+    return Table(head, tuple(rows), caption, frozenset({1, 2, 3, 4}))
+
+
+def _difference_unit(unit: str) -> str:
+    """The unit of a difference: of levels a ratio in dB."""
+    return "dB" if unit in ("dBm", "dBm/Hz", "dBc", "dBc/Hz", "dBuV") else unit
+
+
+def shares_pieces(found: Agreement) -> list[Piece]:
+    """Where a difference between measurement and prediction could come from."""
+    if not found.shares:
+        return []
+    rows: list[tuple[Line, ...]] = [
+        (s.source.words, percent(s.share), show_delta(s.shift, s.unit)) for s in found.shares
+    ]
+    what = result_words(found.result.quantity, found.result.at_hz, found.result.name)
+    caption = f"Where the difference in {what} could come from"
+    head = ("stage and parameter", "share of the prediction's variance", "most likely shift")
+    return [Table(head, tuple(rows), caption, frozenset({1, 2}))]
+
+
+def revision_change(label: str, parent: str | None) -> Line:
+    """A line that links a revision and the one it comes from."""
+    if parent is None:
+        return ("Revision ", revision_link(label))
+    return ("Revision ", revision_link(label), ", from ", revision_link(parent))
+
+
+def folded(summary: str, pieces: Sequence[Piece]) -> list[Piece]:
+    """Pieces folded away beneath a summary; nothing for none."""
+    return [Folded(summary, tuple(pieces))] if pieces else []

@@ -1,0 +1,71 @@
+"""Names and numbers as a person writes them."""
+
+from __future__ import annotations
+
+from math import isnan
+
+from logbook.findings import Delta
+from logbook.pieces import Link, Muted, Span, Verdict
+from logbook.quantity_display import show_delta, show_frequency, show_value
+
+_ACRONYMS = {
+    "nf": "noise figure",
+    "iip3": "IIP3",
+    "oip3": "OIP3",
+    "iip2": "IIP2",
+    "oip2": "OIP2",
+    "ip1db": "input compression (IP1dB)",
+    "op1db": "output compression (OP1dB)",
+    "sfdr": "SFDR",
+    "if_rejection": "IF rejection",
+}
+
+
+def quantity_words(quantity: str) -> str:
+    """`noise_floor` as `noise floor`, `nf` as `noise figure`."""
+    return _ACRONYMS.get(quantity, quantity.replace("_", " "))
+
+
+def result_words(quantity: str, at_hz: float | None, name: str, chain: str = "") -> str:
+    """What a result is, in words: quantity, name, frequency, chain."""
+    words = quantity_words(quantity)
+    if name:
+        words += f" “{name}”"
+    if at_hz is not None:
+        words += f" at {show_frequency(at_hz)}"
+    return f"{words} ({chain})" if chain else words
+
+
+def plain(value: float, unit: str, u: float | None = None) -> str:
+    """A value with its doubt; an empty cell for one that is not known."""
+    return "" if isnan(value) else show_value(value, unit, u)
+
+
+def decibels(value: float, decimals: int = 1) -> str:
+    """A number of a table whose head bears the unit; an empty cell when not known."""
+    return "" if isnan(value) else f"{value:.{decimals}f}"
+
+
+def percent(share: float) -> str:
+    """A share as percent; an empty cell when not known."""
+    return "" if isnan(share) else f"{100 * share:.1f} %" if share < 0.1 else f"{100 * share:.0f} %"
+
+
+def verdict(delta: Delta) -> Verdict:
+    """A delta's verdict with its reason."""
+    return Verdict(delta.verdict, delta.why)
+
+
+def change(delta: Delta) -> str:
+    """A delta with its doubt and sign."""
+    return "" if isnan(delta.delta) else show_delta(delta.delta, delta.unit, delta.u)
+
+
+def revision_link(label: str) -> Link:
+    """A link to a revision's page."""
+    return Link(label, f"revision:{label}")
+
+
+def reason(why: str) -> Span:
+    """A reason in a quieter voice; nothing for none."""
+    return Muted(why) if why else ""

@@ -68,7 +68,10 @@ def _involved(complaint: Complaint) -> list[int]:
 
 
 def _tab(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
-    return next((fault for fault in (_odd_indent(number, lines) for number in _involved(complaint)) if fault), None)
+    fault = next((fault for fault in (_odd_indent(number, lines) for number in _involved(complaint)) if fault), None)
+    if fault is None and _line(lines, complaint.spot.line)[complaint.spot.column :].startswith("\t"):
+        return Fault(complaint.spot, SYNTAX, "A tab stands here.", "Write a space instead.")
+    return fault
 
 
 def _odd_indent(number: int, lines: Sequence[str]) -> Fault | None:

@@ -68,7 +68,7 @@ def cascade(stages: Stages, source_temperature_k: Array | float = T0, in_phase: 
     """
     gain_db = np.cumsum(stages.gain_db, axis=-1)
     before_db = gain_db - stages.gain_db
-    at_input, images = _noise_at_input(stages, before_db)
+    at_input, images = noise_at_input(stages, before_db)
     source = np.asarray(source_temperature_k, dtype=np.float64)[..., np.newaxis]
     own = np.cumsum(at_input, axis=-1)
     floor = images * (source + own)
@@ -104,7 +104,7 @@ def input_intercept(before_db: Array, intercept_dbm: Array, power: float) -> Arr
     p = 1/2 and 1: second order, in phase and random. +inf where all are ideal.
     Source: Razavi, RF Microelectronics (third order); common practice (second order, compression).
     """
-    total = np.cumsum(_terms(before_db, intercept_dbm, power), axis=-1)
+    total = np.cumsum(intercept_terms(before_db, intercept_dbm, power), axis=-1)
     with np.errstate(divide="ignore"):
         mw = np.power(total, -1.0 / power)
     return db_from_ratio(mw)
@@ -115,16 +115,20 @@ def intercept_share(before_db: Array, intercept_dbm: Array, power: float) -> Arr
 
     Source: closed form.
     """
-    terms = _terms(before_db, intercept_dbm, power)
+    terms = intercept_terms(before_db, intercept_dbm, power)
     return _share(terms, np.sum(terms, axis=-1, keepdims=True))
 
 
-def _terms(before_db: Array, intercept_dbm: Array, power: float) -> Array:
+def intercept_terms(before_db: Array, intercept_dbm: Array, power: float) -> Array:
+    """(G_pre/IIP_i)^p, the terms of `input_intercept` in 1/mW^p, [..., n]; 0 for an ideal stage. Source: see there."""
     return ratio_from_db(np.asarray(power * (before_db - intercept_dbm), dtype=np.float64))
 
 
-def _noise_at_input(stages: Stages, before_db: Array) -> tuple[Array, Array]:
-    """Own temperatures at the chain's input, as if they came with the source; and the product of 1 + image so far."""
+def noise_at_input(stages: Stages, before_db: Array) -> tuple[Array, Array]:
+    """Own temperatures (K) at the chain's input, as if they came with the source; and the product of 1 + image so far.
+
+    T_own / (G_pre product), and the product up to and with each stage (1); both [..., n]. Source: see `cascade`.
+    """
     images: Array = np.cumprod(1.0 + stages.image, axis=-1, dtype=np.float64)
     return stages.own_temperature_k / (ratio_from_db(before_db) * images), images
 

@@ -8,7 +8,7 @@ from typing import NamedTuple
 import numpy as np
 
 from logbook.physics.constants import DB_PER_NEPER_POWER, Array
-from logbook.physics.decibels import db_from_ratio, dbm_from_watt, relative_from_u_db, watt_from_dbm
+from logbook.physics.decibels import db_from_ratio, dbm_from_watt, positive_or_nan, relative_from_u_db, watt_from_dbm
 
 _ROUNDS = 20
 
@@ -33,7 +33,8 @@ def split_noise(setting_db: Array, noise_dbm: Array, u_db: Array | None = None) 
     """Least squares of N = a g + b in linear power, weighted by relative uncertainty: settings dB, noise dBm, [n].
 
     u_db [n]: standard uncertainties of the readings in dB. None: all alike, judged by the scatter, which takes three
-    points; nan uncertainties with two. nan all through for fewer than two different settings.
+    points; nan uncertainties with two. nan all through for fewer than two different settings and for an uncertainty of
+    zero, which would leave the others no weight.
     Source: JCGM 100:2008 H.3 for the line; weights from the fitted values, repeated until they stand.
     """
     gain = np.asarray(np.power(10.0, np.asarray(setting_db, dtype=np.float64) / 10.0))
@@ -42,7 +43,9 @@ def split_noise(setting_db: Array, noise_dbm: Array, u_db: Array | None = None) 
     if freedom < 0 or not np.ptp(gain) > 0.0:
         nan = math.nan
         return NoiseSplit(nan, nan, nan, nan, nan, nan, freedom)
-    relative = np.ones_like(noise) if u_db is None else relative_from_u_db(np.asarray(u_db, dtype=np.float64))
+    relative = (
+        np.ones_like(noise) if u_db is None else relative_from_u_db(positive_or_nan(np.asarray(u_db, dtype=np.float64)))
+    )
     expected = noise
     for _ in range(_ROUNDS):
         found, inverse = _weighted(gain, noise, relative * expected)

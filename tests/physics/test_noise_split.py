@@ -95,3 +95,9 @@ def test_one_setting_tells_nothing(settings: list[float]) -> None:
     split = noise_split.split_noise(np.array(settings), np.full(len(settings), -90.0))
     assert math.isnan(split.ahead_w)
     assert not noise_split.told_apart(split)
+
+
+def test_a_doubt_of_zero_is_no_weight() -> None:
+    settings = np.array([0.0, 10.0, 20.0])
+    split = noise_split.split_noise(settings, readings(settings, -110.0, -95.0), np.array([0.1, 0.0, 0.1]))
+    assert math.isnan(split.ahead_w)

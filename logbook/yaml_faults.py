@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,6 +37,8 @@ class Complaint:
 
 SYNTAX = "yaml-syntax"
 
+_CLOSING = {"{": "}", "[": "]"}
+
 _INDENT = re.compile(r"[ ]*([^\S ]+)")
 _VALUE = re.compile(r"(?P<before>\s*(?:-\s+)*(?:[^\s:#'\"\[{][^:#'\"\[{]*:\s+)?)(?P<value>[@`%*&!|>].*?)\s*$")
 _NO_SPACE = re.compile(r"\s*(?:-\s+)*(?P<text>(?P<key>[A-Za-z_][\w-]*):(?P<value>[^\s:].*))")
@@ -50,6 +52,10 @@ def _quoted(value: str) -> str:
 
 def explain(complaint: Complaint, lines: Sequence[str]) -> Fault:
     """The most likely slip behind a parser's complaint."""
+    last = max((number for number, line in enumerate(lines) if line.strip()), default=0)
+    if complaint.spot.line > last:
+        # The end of the text is no place to look at; its last line is.
+        complaint = replace(complaint, spot=Spot(last, len(_line(lines, last))))
     for guess in (_tab, _open_quote, _reserved, _space_after_colon, _second_colon, _dash, _behind_quote, _brackets):
         fault = guess(complaint, lines)
         if fault is not None:
@@ -180,15 +186,31 @@ def _brackets(complaint: Complaint, lines: Sequence[str]) -> Fault | None:
         return None
     since = complaint.since
     bracket = _line(lines, since.line)[since.column : since.column + 1]
-    closing = {"{": "}", "[": "]"}.get(bracket)
-    if closing is None:
+    rest = _line(lines, complaint.spot.line)[complaint.spot.column :].strip()
+    if bracket not in _CLOSING and not rest:
+        # The parser ran into the end; it does not say which bracket it had open.
+        since = _last_open(lines) or since
+        bracket = _line(lines, since.line)[since.column : since.column + 1]
+    if bracket not in _CLOSING:
         return None
-    if complaint.spot.line > since.line or not _line(lines, complaint.spot.line)[complaint.spot.column :].strip():
+    closing = _CLOSING[bracket]
+    if complaint.spot.line > since.line or not rest:
         message = f"The '{bracket}' that opens here is not closed."
         return Fault(since, SYNTAX, message, f"Close it with '{closing}'.")
-    rest = _line(lines, complaint.spot.line)[complaint.spot.column :].strip()
     message = f"A comma or '{closing}' is missing before '{rest}'."
     return Fault(complaint.spot, SYNTAX, message, "Part the items by commas, and quote a text that holds brackets.")
+
+
+def _last_open(lines: Sequence[str]) -> Spot | None:
+    """The last bracket without its partner; quotes are not looked at."""
+    opened: list[Spot] = []
+    for number, line in enumerate(lines):
+        for column, letter in enumerate(line):
+            if letter in _CLOSING:
+                opened.append(Spot(number, column))
+            elif letter in "]}" and opened:
+                opened.pop()
+    return opened[-1] if opened else None
 
 
 def _by_what_was_said(complaint: Complaint, lines: Sequence[str]) -> Fault:

@@ -4,14 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
-from math import isnan
+from math import hypot, isnan
 
 from logbook.compare.equal import in_rbw
 from logbook.compare.verdicts import MEETS, NOT_STATED, UNDECIDED, Rules, target_verdict
 from logbook.findings import Target, TargetVerdict
 from logbook.hardware import Chain
 from logbook.model import MEASURED, PLANNED, PREDICTED, Result, standard_uncertainty
-from logbook.physics.uncertainty import conformity
+from logbook.physics.uncertainty import conformity, linear_sum
 from logbook.prediction import Prediction, Terms
 from logbook.quantities import known_quantity
 from logbook.revision import Revision
@@ -107,3 +107,46 @@ def _closes(
     if old is None or new is None or isnan(old.value) or isnan(new.value):
         return None
     return 1 - gap_of(target, before.value + new.value - old.value) / before.gap
+
+
+@dataclass(frozen=True, slots=True)
+class Weighed:
+    """One alternative of a plan against one target that its parent does not meet."""
+
+    name: str
+    target: Target
+    value: float
+    u: float | None
+    closes: float | None
+    verdict: str
+    cost: float | None
+    currency: str
+
+
+def weigh(revision: Revision, parent: Revision, before: TargetVerdict, predict: Predict) -> list[Weighed]:
+    """The plan and its alternatives against one target, best first: by part of the gap closed, then by cost.
+
+    The expected value is what the parent has, measured where it was, plus the predicted change.
+    """
+    target = before.target
+    old = parent.chains.get(target.chain)
+    ways: list[tuple[str, Chain | None, float | None, str]] = []
+    if any(made.steps for made in revision.made.values()):
+        ways.append(("as planned", revision.chains.get(target.chain), None, ""))
+    ways += [(each.name, each.chains.get(target.chain), each.cost, each.currency) for each in revision.alternatives]
+    terms = Terms(target.at_hz, target.rbw_hz)
+    found = []
+    for name, chain, cost, currency in ways:
+        if chain is None or old is None:
+            continue
+        one, other = (predict(each, terms).totals.get(target.quantity) for each in (old, chain))
+        if one is None or other is None or isnan(one.value) or isnan(other.value):
+            continue
+        parts = linear_sum([(1.0, other.parts), (-1.0, one.parts)])
+        spread = [u for u in (before.u, standard_uncertainty(parts)) if u is not None]
+        u = hypot(*spread) if spread else None
+        value = before.value + other.value - one.value
+        verdict = target_verdict(value, conformity(value, u, target.low, target.high), target.low, target.high)
+        closes = 1 - gap_of(target, value) / before.gap if before.gap > 0 else None
+        found.append(Weighed(name, target, value, u, closes, verdict, cost, currency))
+    return sorted(found, key=lambda w: (-(w.closes or 0.0), w.cost if w.cost is not None else float("inf")))

@@ -135,7 +135,18 @@ def show(block: Block, outcome: Outcome, view: View) -> list[Piece]:
 
 
 def show_bench(bench: Bench, view: View) -> list[Piece]:
-    """One bench as a table."""
+    """One bench as a table, with its calibration as it stands on the entry's date."""
+    pieces: list[Piece] = [bench_table(bench)]
+    if bench.calibrated is not None:
+        until = f", due again on {bench.due}" if bench.due else ""
+        pieces.append(Text(f"Calibrated on {bench.calibrated}{until}."))
+    if bench.overdue(view.entry.date):
+        pieces.append(Note(f"Its calibration was due on {bench.due}, before this entry.", "caution"))
+    return pieces
+
+
+def bench_table(bench: Bench) -> Table:
+    """What a bench is made of, each part with its doubt and what it bears."""
     rows: list[tuple[Line, ...]] = []
 
     def doubt(u: float | None) -> str:
@@ -147,21 +158,16 @@ def show_bench(bench: Bench, view: View) -> list[Piece]:
     rows.append(("instrument, linearity", "", doubt(bench.linearity_u), ""))
     if bench.floor_dbm_per_hz is not None:
         rows.append(("instrument, own noise", show_value(bench.floor_dbm_per_hz, "dBm/Hz"), "", ""))
-    rows.append(
-        ("noise bandwidth over RBW", f"{bench.noise_ratio:.4g}", "" if bench.noise_ratio_stated else "taken", "")
-    )
+    if bench.noise_ratio_stated:
+        rows.append(("noise bandwidth over RBW", f"{bench.noise_ratio:.4g}", "", ""))
+    else:
+        rows.append(("noise bandwidth over RBW", "1", "not stated, taken as 1", ""))
     rows.append(("source, accuracy", "", doubt(drive), ""))
     for part in bench.path:
         loss = show_value(part.loss.value, "dB")
         rows.append((f"{part.name}, loss", loss, doubt(part.loss.u), _limit(part.max_input_dbm)))
     head = ("part", "value", "standard uncertainty", "bears at most")
-    pieces: list[Piece] = [Table(head, tuple(rows), f"Bench {bench.name} as of {bench.since}", frozenset({1, 2, 3}))]
-    if bench.calibrated is not None:
-        until = f", due again on {bench.due}" if bench.due else ""
-        pieces.append(Text(f"Calibrated on {bench.calibrated}{until}."))
-    if bench.overdue(view.entry.date):
-        pieces.append(Note(f"Its calibration was due on {bench.due}, before this entry.", "caution"))
-    return pieces
+    return Table(head, tuple(rows), f"Bench {bench.name} as of {bench.since}", frozenset({1, 2, 3}))
 
 
 def _limit(dbm: float | None) -> str:

@@ -1,30 +1,212 @@
-"""A revision's page: its chains as predicted, what was changed, predicted and measured deltas."""
+"""A revision's page: what changed, predicted, planned and measured side by side; its chains; what to change next."""
 
 from __future__ import annotations
 
+from math import isnan
+
 from logbook.book import Book
-from logbook.pieces import Heading, Items, Note, Piece, Text
+from logbook.compare.deltas import predicted_deltas
+from logbook.compare.next_change import next_change
+from logbook.compare.targets import weigh
+from logbook.compare.verdicts import MEETS, Rules
+from logbook.findings import Delta
+from logbook.model import BUILT, PLANNED, PREDICTED
+from logbook.pages.links import entry_link
+from logbook.pieces import Heading, Items, Line, Note, Piece, Strong, Table, Text, Verdict
 from logbook.prediction import Terms
+from logbook.quantity_display import show_delta, show_value
 from logbook.revision import Revision
 from logbook.showing.chains import chain_pieces
-from logbook.showing.deltas import deltas_table, revision_change
+from logbook.showing.deltas import (
+    agreement_table,
+    budget_pieces,
+    deltas_table,
+    folded,
+    revision_change,
+    shares_pieces,
+)
+from logbook.showing.next_change import next_change_pieces, weighed_table
+from logbook.showing.targets import target_words, targets_table
+from logbook.showing.words import change, reason, result_words
 
 
 def revision_pieces(book: Book, revision: Revision) -> list[Piece]:
     """All that is known of a revision."""
-    pieces: list[Piece] = [Text((revision_change(revision.label, revision.comes_from), f", {revision.state}."))]  # type: ignore[arg-type]
+    said = revision_change(revision.label, revision.comes_from)
+    pieces: list[Piece] = [Text((*said, f", {revision.state}, {revision.date}."))]
+    pieces += _entries(book, revision)
     if revision.broken:
-        pieces.append(Note("A problem in the entries keeps part of this revision from being computed.", "problem"))
+        words = "A problem in the entries keeps part of this revision from being computed."
+        pieces.append(Note(words, "problem"))
+    pieces += regression_pieces(book, revision)
+    pieces += _changes(book, revision)
+    pieces += _targets(book, revision)
+    pieces += _alternatives(book, revision)
+    pieces += _agreement(book, revision)
+    pieces += _next(book, revision)
     parent = book.revisions.get(revision.comes_from or "")
     for name, chain in revision.chains.items():
-        made = revision.made.get(name)
         pieces.append(Heading(2, f"Chain {name}"))
+        made = revision.made.get(name)
         if made is not None and made.steps:
+            why = f" Why: {made.why}." if made.why else ""
+            pieces.append(Text(f"Changed here.{why}"))
             pieces.append(Items(tuple(step.words for step in made.steps)))
-        before = parent.chains.get(name) if parent is not None else None
+        elif made is None and parent is not None:
+            pieces.append(Text(("Unchanged since revision ", *revision_change(parent.label, None)[1:], ".")))
+        before = parent.chains.get(name) if parent is not None and made is not None and not made.full else None
         pieces += chain_pieces(book.predict(chain, Terms()), before)
-    for basis in ("measured", "predicted"):
-        deltas = book.findings.deltas_to(revision.label, basis=basis)
-        if deltas:
-            pieces.append(deltas_table(deltas, f"What changed, {basis}", chains=True))
     return pieces
+
+
+def _entries(book: Book, revision: Revision) -> list[Piece]:
+    titles = {entry.path: entry for entry in book.entries}
+    plan = revision.planned
+    lines: list[Line] = []
+    if plan is not None:
+        lines += [("planned: ", *entry_link(titles[path])) for path in plan.entries]
+    lines += [entry_link(titles[path]) for path in revision.entries]
+    return [Heading(2, "Entries"), Items(tuple(lines))] if lines else []
+
+
+def regression_pieces(book: Book, revision: Revision, keys: set[str] | None = None) -> list[Piece]:
+    """What got worse with this revision, with what was said of it; `keys` keeps only these."""
+    pieces: list[Piece] = []
+    for found in book.findings.regressions_of(revision.label):
+        if keys is not None and found.key not in keys:
+            continue
+        unit = "dB" if found.unit.startswith("dB") else found.unit
+        size = "" if found.delta is None or isnan(found.delta) else f" by {show_value(abs(found.delta), unit)}"
+        what = "a target met before is missed now" if found.kind == "target" else f"worse{size}"
+        said = f"accepted: {found.why}" if found.accepted else "not accepted"
+        words = (Strong(found.key), f": {what}, against revision {found.from_}; {said}.")
+        pieces.append(Note(words, "plain" if found.accepted else "problem"))
+    return pieces
+
+
+def _changes(book: Book, revision: Revision) -> list[Piece]:
+    """Predicted, planned and measured deltas side by side; the doubt of the measured ones beneath."""
+    deltas = book.findings.deltas_to(revision.label)
+    if not deltas:
+        return []
+    measured = [d for d in deltas if d.basis != PREDICTED]
+    predicted = [d for d in deltas if d.basis == PREDICTED]
+    planned = _planned(book, revision)
+    pieces: list[Piece] = [Heading(2, f"What changed since {revision.comes_from}")]
+    if measured:
+        pieces.append(_side_by_side(measured, predicted, planned))
+        budgets: list[Piece] = []
+        for d in measured:
+            if d.budget:
+                budgets += [Text(result_words(d.quantity, d.at_hz, d.name)), *budget_pieces(d, book.settings.coverage)]
+        pieces += folded("Where the doubt of the measured changes comes from", budgets)
+    changed = [d for d in predicted if d.verdict != "same"]
+    if changed:
+        pieces.append(deltas_table(changed, "Predicted", chains=len(revision.chains) > 1))
+    same = [d for d in predicted if d.verdict == "same"]
+    pieces += folded("Predicted to stay the same", [deltas_table(same, "", chains=True)] if same else [])
+    if planned and not measured:
+        pieces.append(deltas_table(planned, "As it was planned", chains=len(revision.chains) > 1))
+    return pieces
+
+
+def _planned(book: Book, revision: Revision) -> list[Delta]:
+    """The deltas that the plan of this label promised, against the plan's own parent."""
+    plan = revision.planned
+    if plan is None:
+        return []
+    parent = book.revisions.get(plan.comes_from or "")
+    found: list[Delta] = []
+    rules = Rules(book.settings.coverage, book.settings.matters)
+    for name, chain in plan.chains.items():
+        before = parent.chains.get(name) if parent is not None else None
+        if before is not None and parent is not None:
+            old, new = book.predict(before, Terms()), book.predict(chain, Terms())
+            found += predicted_deltas(old, new, parent.label, plan.label, rules)
+    return [d for d in found if d.verdict != "same"]
+
+
+def _side_by_side(measured: list[Delta], predicted: list[Delta], planned: list[Delta]) -> Table:
+    def beside(found: list[Delta], d: Delta) -> str:
+        same = [p for p in found if (p.chain, p.quantity) == (d.chain, d.quantity) and not d.name]
+        return change(same[0]) if same else ""
+
+    rows: list[tuple[Line, ...]] = []
+    for d in measured:
+        row: list[Line] = [result_words(d.quantity, d.at_hz, d.name, d.chain), d.from_]
+        row += [_figure(d.before, d.unit), _figure(d.after, d.unit), change(d)]
+        row += [beside(planned, d)] if planned else []
+        row += [beside(predicted, d)]
+        row.append((Verdict(d.verdict), " ", reason(d.why)) if d.why else Verdict(d.verdict))
+        rows.append(tuple(row))
+    head = ["quantity", "against", "before", "after", "measured change"]
+    head += ["planned"] if planned else []
+    head += ["predicted", "verdict"]
+    return Table(tuple(head), tuple(rows), "Measured", frozenset(range(2, len(head) - 1)))
+
+
+def _figure(value: float, unit: str) -> str:
+    return "" if isnan(value) else show_value(value, unit)
+
+
+def _targets(book: Book, revision: Revision) -> list[Piece]:
+    found = book.findings.targets_of(revision.label)
+    if not found:
+        return []
+    by_key = {v.target.key: v for v in found}
+    pieces: list[Piece] = [Heading(2, "Targets")]
+    pieces.append(targets_table([v.target for v in found], by_key, revision.label))
+    if revision.state == PLANNED:
+        lines = []
+        for v in found:
+            if v.closes is not None:
+                reach = "" if v.verdict == MEETS else "; by this alone it is not reached beyond doubt"
+                lines.append(f"{target_words(v.target)}: expected to close {100 * v.closes:.0f} % of the gap{reach}")
+        pieces += [Items(tuple(lines))] if lines else []
+    return pieces
+
+
+def _alternatives(book: Book, revision: Revision) -> list[Piece]:
+    parent = book.revisions.get(revision.comes_from or "")
+    if parent is None or not revision.alternatives:
+        return []
+    pieces: list[Piece] = [Heading(2, "Alternatives weighed")]
+    for before in book.findings.targets_of(parent.label):
+        if before.verdict == MEETS or isnan(before.value):
+            continue
+        weighed = weigh(revision, parent, before, book.predict)
+        if weighed:
+            caption = f"{target_words(before.target)} {before.target.written}"
+            pieces.append(weighed_table(weighed, caption))
+    return pieces if len(pieces) > 1 else []
+
+
+def _agreement(book: Book, revision: Revision) -> list[Piece]:
+    found = [a for a in book.findings.agreement if a.revision == revision.label]
+    pieces: list[Piece] = []
+    if found:
+        pieces += [Heading(2, "Measured against predicted"), agreement_table(found, "")]
+        for each in found:
+            if each.verdict == "disagrees":
+                pieces += shares_pieces(each)
+    for spread in book.findings.spreads:
+        if spread.revision == revision.label:
+            unit = "dB" if spread.unit.startswith("dB") else spread.unit
+            words = (
+                f"Two readings of {spread.key} on {revision.label} differ by {show_delta(spread.difference, unit)}, "
+            )
+            words += f"more than their stated doubt (u = {show_value(spread.u, unit)}) allows: "
+            words += f"{spread.first.entry} line {spread.first.line}, {spread.second.entry} line {spread.second.line}."
+            pieces.append(Note(words, "caution"))
+    return pieces
+
+
+def _next(book: Book, revision: Revision) -> list[Piece]:
+    if revision.state != BUILT:
+        return []
+    pieces: list[Piece] = []
+    for verdict in book.findings.targets_of(revision.label):
+        found = next_change(verdict, revision.chains.get(verdict.target.chain), book.predict)
+        if found is not None:
+            pieces += next_change_pieces(found)
+    return [Heading(2, "What to change next"), *pieces] if pieces else []

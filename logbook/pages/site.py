@@ -1,20 +1,28 @@
-"""Home, revisions, history, targets, open items and benches as pages."""
+"""The pages that the logbook makes itself, but for home."""
 
 from __future__ import annotations
 
 import re
+from collections.abc import Sequence
 
 from logbook.book import Book
-from logbook.pages.entry import entry_link
+from logbook.findings import Todo
+from logbook.model import Entry
+from logbook.pages.benches import bench_pieces
+from logbook.pages.history import history_pieces
+from logbook.pages.links import entry_link
 from logbook.pages.revision import revision_pieces
-from logbook.pieces import Branch, Heading, Items, Note, Page, Piece, Table, Text, Tree
-from logbook.showing.targets import target_verdict_line, target_words, targets_table
-from logbook.showing.words import plain, revision_link
+from logbook.pieces import Heading, Items, Line, Muted, Note, Page, Piece, Span, Table
+from logbook.showing.targets import target_verdict_line, target_words
+from logbook.showing.words import plain
 
 
 def revision_path(label: str) -> str:
-    """The path of a revision's page; letters that a file system minds are written as their code points."""
-    safe = re.sub(r"[^A-Za-z0-9.+-]", lambda m: f"_{ord(m.group()):x}_", label)
+    """The path of a revision's page; letters that a file system minds are written as their code points.
+
+    Capitals are marked too, so that revisions `b` and `B` do not fall together where case does not count.
+    """
+    safe = re.sub(r"[^A-Z0-9.+-]", lambda m: f"_{ord(m.group()):x}", label)
     return f"revisions/{safe}.md"
 
 
@@ -27,52 +35,28 @@ def generated_pages(book: Book) -> list[Page]:
     pages.append(Page("history.md", "History", tuple(history_pieces(book))))
     pages.append(Page("targets.md", "Targets", tuple(target_pieces(book))))
     pages.append(Page("open-items.md", "Open items", tuple(todo_pieces(book))))
+    pages.append(Page("benches.md", "Benches", tuple(bench_pieces(book))))
     return pages
-
-
-def home_pieces(book: Book) -> list[Piece]:
-    """Where the project stands."""
-    if not book.entries:
-        words = 'There is no entry yet. Start one with: logbook new "First light"'
-        return [Note(words)]
-    pieces: list[Piece] = []
-    latest = book.latest
-    if latest is not None:
-        verdicts = {v.target.key: v for v in book.findings.targets_of(latest.label)}
-        pieces.append(Text(("Built now: revision ", revision_link(latest.label), ".")))
-        if verdicts:
-            pieces.append(targets_table(list(book.history.targets.values()), verdicts, latest.label))
-    pieces.append(Heading(2, "Entries"))
-    pieces.append(Items(tuple(entry_link(entry) for entry in reversed(book.entries))))
-    return pieces
-
-
-def history_pieces(book: Book) -> list[Piece]:
-    """The tree of the hardware's revisions."""
-
-    def branches(parent: str | None) -> tuple[Branch, ...]:
-        return tuple(
-            Branch((revision_link(label), f" {revision.state}, {revision.date}"), branches(label), not revision.built)
-            for label, revision in book.revisions.items()
-            if revision.comes_from == parent
-        )
-
-    return [Tree(branches(None))]
 
 
 def target_pieces(book: Book) -> list[Piece]:
     """Every target against every revision."""
     labels = list(book.revisions)
+    if not book.history.targets:
+        return [Note("No target is set yet: a target block says what the project wants to reach.")]
     by = {(v.target.key, v.revision): v for v in book.findings.targets}
-    rows = []
+    rows: list[tuple[Line, ...]] = []
     for target in book.history.targets.values():
-        cells = []
+        cells: list[Line] = [target_words(target), target.written]
         for label in labels:
             found = by.get((target.key, label))
             value = "" if found is None else plain(found.value, target.unit, found.u)
-            cells.append((value, " ", target_verdict_line(found)))
-        rows.append((target_words(target), target.written, *cells))
-    return [Table(("target", "limit", *labels), tuple(rows), "Targets by revision")]  # type: ignore[arg-type]
+            line: tuple[Span, ...] = target_verdict_line(found)
+            basis = Muted(found.basis) if found is not None else ""
+            cells.append((value, " ", basis, " ", *line))
+        rows.append(tuple(cells))
+    head = ("target", "limit", *(f"{label} ({book.revisions[label].state})" for label in labels))
+    return [Table(head, tuple(rows), "Targets by revision", frozenset({1}))]
 
 
 def todo_pieces(book: Book) -> list[Piece]:
@@ -80,8 +64,20 @@ def todo_pieces(book: Book) -> list[Piece]:
     titles = {entry.path: entry for entry in book.entries}
     open_ = [t for t in book.findings.todo if t.closed is None]
     closed = [t for t in book.findings.todo if t.closed is not None]
-    pieces: list[Piece] = [Heading(2, "Open")]
-    pieces.append(Items(tuple((t.what, ", since ", *entry_link(titles[t.opened])) for t in open_)))
-    pieces.append(Heading(2, "Closed"))
-    pieces.append(Items(tuple((t.what, ", in ", *entry_link(titles[t.closed or t.opened])) for t in closed)))
+    if not open_ and not closed:
+        return [Note("No item has been opened yet: a todo block says what is left to do.")]
+    pieces: list[Piece] = [Heading(2, f"Open ({len(open_)})")]
+    pieces.append(Items(_lines(open_, titles)) if open_ else Note("Nothing is open.", "good"))
+    if closed:
+        pieces += [Heading(2, f"Closed ({len(closed)})"), Items(_lines(closed, titles))]
     return pieces
+
+
+def _lines(items: Sequence[Todo], titles: dict[str, Entry]) -> tuple[Line, ...]:
+    lines: list[Line] = []
+    for item in items:
+        line: Line = (item.what, " ", Muted("since "), *entry_link(titles[item.opened]))
+        if item.closed is not None:
+            line = (*line, Muted("; closed in "), *entry_link(titles[item.closed]))
+        lines.append(line)
+    return tuple(lines)

@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 
 from logbook.hardware import Chain
 from logbook.model import Parts, standard_uncertainty
+from logbook.physics.cascade import Stages
 
 TOTAL_UNITS = {
     "gain": "dB",
@@ -87,3 +88,4 @@ class Prediction:
     noise_unknown_from: str = ""
     held_at: str = ""
     frequencies_hz: tuple[float, ...] = field(default=())
+    nominal: Stages | None = None

@@ -51,6 +51,19 @@ def predict(chain: Chain, terms: Terms = _OWN_TERMS) -> Prediction:
         noise_unknown_from=first_unknown(chain, stages),
         held_at=held(wanted, top, chain),
         frequencies_hz=tuple(copies.frequencies),
+        nominal=nominal(stages),
+    )
+
+
+def nominal(stages: Stages) -> Stages:
+    """The unperturbed copy alone, [stages]."""
+    return Stages(
+        gain_db=stages.gain_db[0],
+        own_temperature_k=stages.own_temperature_k[0],
+        image=stages.image[0],
+        iip3_dbm=stages.iip3_dbm[0],
+        iip2_dbm=stages.iip2_dbm[0],
+        ip1db_dbm=stages.ip1db_dbm[0],
     )
 
 

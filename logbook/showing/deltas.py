@@ -6,7 +6,7 @@ from collections.abc import Iterable, Sequence
 from math import isnan
 
 from logbook.findings import Agreement, Delta
-from logbook.pieces import Folded, Line, Piece, Table, Text, Verdict
+from logbook.pieces import Folded, Line, Piece, Span, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_value
 from logbook.showing.words import change, percent, plain, reason, result_words, revision_link
 
@@ -91,11 +91,11 @@ def shares_pieces(found: Agreement) -> list[Piece]:
     return [Table(head, tuple(rows), caption, frozenset({1, 2}))]
 
 
-def revision_change(label: str, parent: str | None) -> Line:
+def revision_change(label: str, parent: str | None) -> tuple[Span, ...]:
     """A line that links a revision and the one it comes from."""
     if parent is None:
-        return ("Revision ", revision_link(label))
-    return ("Revision ", revision_link(label), ", from ", revision_link(parent))
+        return ("revision ", revision_link(label))
+    return ("revision ", revision_link(label), ", from ", revision_link(parent))
 
 
 def folded(summary: str, pieces: Sequence[Piece]) -> list[Piece]:

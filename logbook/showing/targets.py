@@ -6,7 +6,7 @@ from collections.abc import Mapping, Sequence
 from math import isnan
 
 from logbook.findings import Target, TargetVerdict
-from logbook.pieces import Line, Muted, Table, Verdict
+from logbook.pieces import Line, Muted, Span, Table, Verdict
 from logbook.quantity_display import show_frequency, show_value
 from logbook.showing.words import plain, result_words
 
@@ -27,13 +27,13 @@ def probability_words(verdict: TargetVerdict) -> str:
     return f"{p:.1f} %" if p < 10 or p > 90 else f"{p:.0f} %"
 
 
-def target_verdict_line(verdict: TargetVerdict | None) -> Line:
+def target_verdict_line(verdict: TargetVerdict | None) -> tuple[Span, ...]:
     """A target's verdict with its probability, as a line."""
     if verdict is None:
-        return Muted("not judged")
+        return (Muted("not judged"),)
     words = probability_words(verdict)
     said = [each for each in (f"{words} probable" if words else "", verdict.why) if each]
-    return (Verdict(verdict.verdict), " ", Muted(", ".join(said))) if said else Verdict(verdict.verdict)
+    return (Verdict(verdict.verdict), " ", Muted(", ".join(said))) if said else (Verdict(verdict.verdict),)
 
 
 def missing_words(verdict: TargetVerdict) -> str:

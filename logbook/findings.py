@@ -11,14 +11,20 @@ from logbook.quantities import Better
 
 @dataclass(frozen=True, slots=True)
 class BudgetRow:
-    """One source's share in a comparison's doubt; `cancelled` is what dropped out because both sides share it."""
+    """One source's share in a comparison's doubt: its own u there, and how much of it enters the difference.
+
+    `cancelled`: both sides share the source in full, and it drops out.
+    """
 
     source: Source
     u: float
     sensitivity: float
     cancelled: bool
-    u_before: float = 0.0
-    u_after: float = 0.0
+
+    @property
+    def contribution(self) -> float:
+        """What the source adds to the doubt of the difference."""
+        return abs(self.u * self.sensitivity)
 
 
 @dataclass(frozen=True, slots=True)
@@ -92,6 +98,7 @@ class Target:
     entry: str
     place: Place
     key: str
+    source_temperature_k: float | None = None
 
 
 @dataclass(frozen=True, slots=True)

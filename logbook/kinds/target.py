@@ -21,6 +21,7 @@ FIELDS = (
     Field("name", text()),
     Field("at", quantity("frequency", positive=True)),
     Field("rbw", quantity("frequency", positive=True)),
+    Field("source_temperature", quantity("noise_temperature", positive=True)),
     Field("limit", text(), required=True, help="Such as '<= -125 dBm', '>= 6 dB' or '40 dB .. 44 dB'."),
     Field("why", text()),
 )
@@ -56,6 +57,7 @@ def declare(values: Values, session: Session) -> Target | None:
         at_hz=at,
         name=values.get("name", ""),
         rbw_hz=values["rbw"].value if "rbw" in values else None,
+        source_temperature_k=values["source_temperature"].value if "source_temperature" in values else None,
         low=low,
         high=high,
         unit=unit,

@@ -74,7 +74,7 @@ def deltas_of(
             )
     if revision.state != PLANNED:
         lines = [(each.label, own[each.label]) for each in ancestors]
-        found += measured_deltas(own[revision.label], lines, revision.label, rules)
+        found += measured_deltas(own[revision.label], lines, revision.label, rules, set(revision.made))
     return found
 
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Collection, Iterable, Mapping, Sequence
 from math import isnan, sqrt
 
 from logbook.compare.equal import in_rbw, why_not_comparable
@@ -115,16 +115,22 @@ def budget(before: Parts | None, after: Parts | None) -> tuple[BudgetRow, ...]:
     old, new = before or {}, after or {}
     for source in dict.fromkeys([*new, *old]):
         one, other = old.get(source, 0.0), new.get(source, 0.0)
-        left = other - one
-        shared = source in old and source in new
-        cancelled = shared and abs(left) <= _CANCELLED * max(abs(one), abs(other))
-        sensitivity = 1.0 if source in new and source not in old else -1.0 if source not in new else 0.0
-        rows.append(BudgetRow(source, abs(left), sensitivity, cancelled, abs(one), abs(other)))
-    return tuple(sorted(rows, key=lambda row: (row.cancelled, -row.u)))
+        size = max(abs(one), abs(other))
+        if size == 0.0:
+            continue
+        left = (other - one) / size
+        cancelled = source in old and source in new and abs(left) <= _CANCELLED
+        rows.append(BudgetRow(source, size, 0.0 if cancelled else left, cancelled))
+    return tuple(sorted(rows, key=lambda row: (row.cancelled, -row.contribution)))
 
 
-def measured_deltas(own: ByKey, ancestors: Sequence[tuple[str, ByKey]], label: str, rules: Rules) -> list[Delta]:
-    """A revision's measured results against the nearest ancestor that has each; new ones, and ones not read again."""
+def measured_deltas(
+    own: ByKey, ancestors: Sequence[tuple[str, ByKey]], label: str, rules: Rules, touched: Collection[str] | None = None
+) -> list[Delta]:
+    """A revision's measured results against the nearest ancestor that has each; new ones, and ones not read again.
+
+    What was not read again counts only on the chains that the revision touched; None: on all.
+    """
     found: list[Delta] = []
     for key, results in own.items():
         old = next((results_of[key] for _, results_of in ancestors if key in results_of), None)
@@ -135,7 +141,8 @@ def measured_deltas(own: ByKey, ancestors: Sequence[tuple[str, ByKey]], label: s
             found.append(_one_sided(results[-1], label, ancestors[0][0], NEW))
     if own and ancestors:
         parent, results_of = ancestors[0]
-        found += [_one_sided(old[-1], label, parent, GONE) for key, old in results_of.items() if key not in own]
+        lost = [old[-1] for key, old in results_of.items() if key not in own]
+        found += [_one_sided(r, label, parent, GONE) for r in lost if touched is None or r.chain in touched]
     return found
 
 

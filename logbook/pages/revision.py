@@ -156,21 +156,15 @@ def _targets(book: Book, revision: Revision) -> list[Piece]:
     by_key = {v.target.key: v for v in found}
     pieces: list[Piece] = [Heading(2, "Targets")]
     pieces.append(targets_table([v.target for v in found], by_key, revision.label))
-    if revision.state == PLANNED:
-        lines = []
-        for v in found:
-            if v.closes is not None:
-                reach = "" if v.verdict == MEETS else "; by this alone it is not reached beyond doubt"
-                lines.append(f"{target_words(v.target)}: expected to close {100 * v.closes:.0f} % of the gap{reach}")
-        pieces += [Items(tuple(lines))] if lines else []
     return pieces
 
 
 def _alternatives(book: Book, revision: Revision) -> list[Piece]:
     parent = book.revisions.get(revision.comes_from or "")
-    if parent is None or not revision.alternatives:
+    if parent is None or revision.state != PLANNED:
         return []
-    pieces: list[Piece] = [Heading(2, "Alternatives weighed")]
+    title = "Alternatives weighed" if revision.alternatives else "Can this plan reach the targets?"
+    pieces: list[Piece] = [Heading(2, title)]
     for before in book.findings.targets_of(parent.label):
         if before.verdict == MEETS or isnan(before.value):
             continue

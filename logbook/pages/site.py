@@ -51,9 +51,8 @@ def target_pieces(book: Book) -> list[Piece]:
         for label in labels:
             found = by.get((target.key, label))
             value = "" if found is None else plain(found.value, target.unit, found.u)
-            line: tuple[Span, ...] = target_verdict_line(found)
             basis = Muted(found.basis) if found is not None else ""
-            cells.append((value, " ", basis, " ", *line))
+            cells.append((value, " ", basis, " ", *target_verdict_line(found)))
         rows.append(tuple(cells))
     head = ("target", "limit", *(f"{label} ({book.revisions[label].state})" for label in labels))
     return [Table(head, tuple(rows), "Targets by revision", frozenset({1}))]
@@ -76,8 +75,8 @@ def todo_pieces(book: Book) -> list[Piece]:
 def _lines(items: Sequence[Todo], titles: dict[str, Entry]) -> tuple[Line, ...]:
     lines: list[Line] = []
     for item in items:
-        line: Line = (item.what, " ", Muted("since "), *entry_link(titles[item.opened]))
+        line: list[Span] = [item.what, " ", Muted("since "), *entry_link(titles[item.opened])]
         if item.closed is not None:
-            line = (*line, Muted("; closed in "), *entry_link(titles[item.closed]))
-        lines.append(line)
+            line += [Muted("; closed in "), *entry_link(titles[item.closed])]
+        lines.append(tuple(line))
     return tuple(lines)

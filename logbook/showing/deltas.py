@@ -34,18 +34,10 @@ def budget_pieces(delta: Delta, k: float) -> list[Piece]:
         return []
     rows: list[tuple[Line, ...]] = []
     for row in delta.budget:
-        said = "common to both: cancels" if row.cancelled else ""
-        rows.append(
-            (
-                row.source.words,
-                show_value(row.u_before, "dB") if row.u_before else "",
-                show_value(row.u_after, "dB") if row.u_after else "",
-                f"{row.u:.3g}",
-                said,
-            )
-        )
-    unit = delta.unit
-    head = ("source", f"u before ({delta.from_})", f"u after ({delta.to})", f"u in the change ({unit})", "")
+        said = "common to both: cancels" if row.cancelled else f"{row.contribution:.3g}"
+        rows.append((row.source.words, f"{row.u:.3g}", f"{row.sensitivity:+.3g}", said))
+    unit = _difference_unit(delta.unit)
+    head = ("source", f"u, {unit}", "sensitivity", f"contribution, {unit}")
     table = Table(head, tuple(rows), "Where the doubt of the change comes from", frozenset({1, 2, 3}))
     if delta.u is None:
         total = "What was stated cancels, and what is fresh in each reading was not stated."

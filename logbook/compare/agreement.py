@@ -47,7 +47,7 @@ def _output_level(result: Result, prediction: Prediction) -> Estimate | None:
 
 def agreement(result: Result, chain: Chain, predict: Predict, rules: Rules) -> Agreement | None:
     """A measured result against the prediction; None where there is no prediction, or only a bound is known."""
-    if result.name or result.bound or isnan(result.value):
+    if result.name or result.bound or isnan(result.value) or _peak_of_noise(result):
         return None
     estimate = predicted_for(result, chain, predict)
     if estimate is None or isnan(estimate.value):
@@ -78,6 +78,12 @@ def agreement(result: Result, chain: Chain, predict: Predict, rules: Rules) -> A
         why=why,
         shares=_shares(difference, estimate, chain, u_measured or 0.0),
     )
+
+
+def _peak_of_noise(result: Result) -> bool:
+    """A peak reading of noise says nothing of its power, which is what is predicted."""
+    known = known_quantity(result.quantity)
+    return known is not None and known.noise and result.conditions.averaging == "peak"
 
 
 def _shares(difference: float, estimate: Estimate, chain: Chain, u_measured: float) -> tuple[Share, ...]:

@@ -9,6 +9,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 from mkdocs.utils.meta import get_data
 
+from logbook import fences
 from logbook.entry_text import EntryText, Fence, decode, replace_fences, scan
 from logbook.problems import Problem, Problems
 
@@ -313,3 +314,15 @@ def test_any_bytes_are_decoded(data: bytes) -> None:
     assert "\r" not in text
     assert "\0" not in text
     assert len(problems) <= 2
+
+
+MANY_OPEN = ["```x", "````x", "`````x", "~~~x", "```yaml todo", "````yaml todo", "```", "````", "> ```x", "text", ""]
+
+
+@given(st.lists(st.sampled_from(MANY_OPEN), max_size=14))
+def test_the_shortcut_past_open_fences_changes_nothing(lines: list[str]) -> None:
+    text = "\n".join(lines)
+    quick = scanned(text)
+    with pytest.MonkeyPatch.context() as patch:
+        patch.setattr(fences, "_known_end", lambda mark, unclosed: None)
+        assert scanned(text) == quick

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 
 from logbook.model import Conditions, Result, Source
+from logbook.prediction import Terms
 from logbook.problems import Place
 from logbook.quantities import Better
 
@@ -99,6 +100,11 @@ class Target:
     place: Place
     key: str
     source_temperature_k: float | None = None
+
+    @property
+    def terms(self) -> Terms:
+        """What a prediction must be made for to be held against this target."""
+        return Terms(self.at_hz, self.rbw_hz, self.source_temperature_k)
 
 
 @dataclass(frozen=True, slots=True)

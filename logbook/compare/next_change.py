@@ -60,7 +60,7 @@ def next_change(verdict: TargetVerdict, chain: Chain | None, predict: Predict) -
     target = verdict.target
     if verdict.verdict == MEETS or chain is None or target.name or isnan(verdict.value):
         return None
-    terms = Terms(target.at_hz, target.rbw_hz, target.source_temperature_k)
+    terms = target.terms
     prediction = predict(chain, terms)
     total = prediction.totals.get(target.quantity)
     if total is None or isnan(total.value) or prediction.nominal is None:

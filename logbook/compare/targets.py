@@ -82,7 +82,7 @@ def _predicted(target: Target, chain: Chain | None, predict: Predict) -> _Value:
     nan = float("nan")
     if chain is None:
         return _Value(PREDICTED, nan, None, "not measured, and there is no chain to predict it from")
-    estimate = predict(chain, Terms(target.at_hz, target.rbw_hz, target.source_temperature_k)).totals.get(
+    estimate = predict(chain, target.terms).totals.get(
         target.quantity
     )
     if estimate is None or target.name:
@@ -104,7 +104,7 @@ def _closes(
     """The part of the parent's remaining gap that a plan is expected to close; None where nothing is missing."""
     if chain is None or parent is None or isnan(before.gap) or before.gap <= 0:
         return None
-    terms = Terms(target.at_hz, target.rbw_hz, target.source_temperature_k)
+    terms = target.terms
     old, new = (predict(each, terms).totals.get(target.quantity) for each in (parent, chain))
     if old is None or new is None or isnan(old.value) or isnan(new.value):
         return None
@@ -136,7 +136,7 @@ def weigh(revision: Revision, parent: Revision, before: TargetVerdict, predict: 
     if any(made.steps for made in revision.made.values()):
         ways.append(("as planned", revision.chains.get(target.chain), None, ""))
     ways += [(each.name, each.chains.get(target.chain), each.cost, each.currency) for each in revision.alternatives]
-    terms = Terms(target.at_hz, target.rbw_hz, target.source_temperature_k)
+    terms = target.terms
     found = []
     for name, chain, cost, currency in ways:
         if chain is None or old is None:

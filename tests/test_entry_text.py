@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from typing import Any
 
+import markdown
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
@@ -326,3 +328,51 @@ def test_the_shortcut_past_open_fences_changes_nothing(lines: list[str]) -> None
     with pytest.MonkeyPatch.context() as patch:
         patch.setattr(fences, "_known_end", lambda mark, unclosed: None)
         assert scanned(text) == quick
+
+
+def found_by_markdown(text: str) -> list[str]:
+    """The texts of fences with the info string `yaml todo`, as the site's own Markdown extension reads them."""
+    found: list[str] = []
+
+    def accept(language: str, inputs: dict[str, Any], options: dict[str, Any], attrs: object, md: object) -> bool:
+        options.update(inputs)
+        return True
+
+    def collect(source: str, language: str, css: str, options: dict[str, Any], md: object, **rest: object) -> str:
+        if "todo" in options:
+            found.append(source)
+        return "<p>block</p>"
+
+    custom = {"name": "yaml", "class": "x", "format": collect, "validator": accept}
+    settings = {"pymdownx.superfences": {"custom_fences": [custom]}}
+    markdown.markdown(text, extensions=["admonition", "pymdownx.superfences"], extension_configs=settings)
+    return found
+
+
+BLOCK = ["```yaml todo", "a: 1", "", "b:", "  c: 2", "```"]
+
+
+def put(prefix: str, lines: list[str]) -> str:
+    return "".join((prefix + line if line else prefix.rstrip()) + "\n" for line in lines)
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        put("", BLOCK),
+        "- item\n\n" + put("    ", BLOCK) + "\n- next\n",
+        "1. item\n\n    - deeper\n\n" + put("        ", BLOCK),
+        '!!! note "x"\n    words\n\n' + put("    ", BLOCK),
+        put("> ", ["words", "", *BLOCK]),
+        "````markdown\n" + put("", BLOCK) + "````\n\n" + put("", BLOCK),
+        "~~~text\n" + put("", BLOCK) + "~~~\n",
+        put("", BLOCK).replace("```", "~~~~"),
+        "`<!--` words\n\n" + put("", BLOCK),
+        "```text\nx\n```\n" + put("", BLOCK) + put("", BLOCK),
+        "a ```yaml todo``` b\n\n" + put("", BLOCK),
+    ],
+)
+def test_blocks_are_those_that_the_sites_markdown_finds(text: str) -> None:
+    entry, problems = scanned(text)
+    assert [fence.text.rstrip("\n") for fence in entry.fences] == [t.rstrip("\n") for t in found_by_markdown(text)]
+    assert not problems

@@ -196,7 +196,8 @@ def _repeated(node: YamlSequence, dimension: str | tuple[str, ...], asked: Asked
         try:
             read_quantity(scalar.text, dimension, asked.what.replace("_", " "))
         except QuantityError as error:
-            asked.fault(scalar.place, error.code, error.message, error.hint)
+            place = Place(scalar.place.file, scalar.place.line, scalar.place.column + error.offset)
+            asked.fault(place, error.code, error.message, error.hint)
         texts.append(scalar.text)
     if len(asked.problems) > before:
         return None
@@ -204,7 +205,7 @@ def _repeated(node: YamlSequence, dimension: str | tuple[str, ...], asked: Asked
         asked.fault(node.place, "empty", f"An empty list stands at '{asked.what}'; expected readings.")
         return None
     try:
-        return read_repeated(texts, dimension)
+        return read_repeated(texts, dimension, asked.what.replace("_", " "))
     except QuantityError as error:
         asked.fault(node.place, error.code, error.message, error.hint)
         return None

@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 from typing import Any
 
 from logbook.bench import Bench
+from logbook.compare.verdicts import Rules
 from logbook.fields import Field
 from logbook.findings import Findings
 from logbook.hardware import Chain
@@ -109,7 +110,7 @@ class View:
     revisions: Mapping[str, Revision]
     benches: Mapping[str, Bench]
     findings: Findings
-    coverage: float
+    rules: Rules
     predict: Callable[[Chain, Terms], Prediction]
     earlier: Mapping[tuple[str, str], Sequence[Earlier]] = field(default_factory=dict)
 

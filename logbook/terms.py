@@ -121,10 +121,10 @@ def _free_of_bench(
     else:
         return _unaveraged(state, excess)
     # The correction steepens the scale: an error of the reading moves the corrected value by more than itself.
-    steeper = corrected.per_reading
+    steeper = float(corrected.per_reading)
     parts = {source: part * (steeper if source.what != "loss" else 1) for source, part in state.parts.items()}
     label = f"bench's own noise ({show_value(floor, 'dBm')}) taken off"
-    return replace(_add(state, label, corrected.value_dbm - state.value), parts=parts)
+    return replace(_add(state, label, float(corrected.value_dbm) - state.value), parts=parts)
 
 
 def _unaveraged(state: EqualTerms, excess: float) -> EqualTerms:

@@ -59,6 +59,11 @@ class Book:
         return self.calculated.results
 
     @property
+    def rules(self) -> Rules:
+        """What verdicts rest on."""
+        return Rules(self.settings.coverage, self.settings.matters)
+
+    @property
     def latest(self) -> Revision | None:
         """The revision that was built last."""
         return next((r for r in reversed(self.revisions.values()) if r.built), None)
@@ -80,7 +85,7 @@ class Book:
             revisions=self.revisions,
             benches=self.history.benches[entry.path],
             findings=self.findings,
-            coverage=self.settings.coverage,
+            rules=self.rules,
             predict=self.predict,
             earlier=self.calculated.earlier,
         )

@@ -6,7 +6,7 @@ from collections.abc import Callable, Sequence
 
 from logbook.book.history import History
 from logbook.compare.agreement import agreement
-from logbook.compare.deltas import by_key, measured_deltas, predicted_deltas
+from logbook.compare.deltas import by_key, chain_deltas, measured_deltas
 from logbook.compare.regressions import regressions, spreads
 from logbook.compare.targets import judge_target
 from logbook.compare.verdicts import Rules
@@ -65,13 +65,7 @@ def deltas_of(
     if not ancestors:
         return []
     parent = ancestors[0]
-    found: list[Delta] = []
-    for name, chain in revision.chains.items():
-        before = parent.chains.get(name)
-        if before is not None:
-            found += predicted_deltas(
-                predict(before, Terms()), predict(chain, Terms()), parent.label, revision.label, rules
-            )
+    found = chain_deltas(revision, parent, predict, rules)
     if revision.state != PLANNED:
         lines = [(each.label, own[each.label]) for each in ancestors]
         found += measured_deltas(own[revision.label], lines, revision.label, rules, set(revision.made))

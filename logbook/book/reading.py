@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import date
 
 from logbook.book.sources import SourceFile
@@ -44,7 +44,6 @@ def read_file(source: SourceFile, kinds: Mapping[str, Kind], problems: Problems)
         _block(source.path, number, fence, kinds, problems) for number, fence in enumerate(written.fences, start=1)
     )
     if front is None:
-        _date_missing(written, problems)
         return ReadFile(source.path, written, None)
     return ReadFile(source.path, written, _entry(source.path, front, blocks, problems))
 
@@ -52,8 +51,9 @@ def read_file(source: SourceFile, kinds: Mapping[str, Kind], problems: Problems)
 def _front(written: EntryText, problems: Problems) -> YamlMapping | None:
     """The front matter of an entry; None for an ordinary page."""
     if written.front is None:
+        _date_missing(written, problems)
         return None
-    node = read_yaml(written.front, written.path, written.front_line, 0, problems)
+    node = read_yaml(written.front, written.path, written.front_line, 0, problems, "front matter")
     if node is None:
         return None
     if not isinstance(node, YamlMapping):
@@ -64,7 +64,10 @@ def _front(written: EntryText, problems: Problems) -> YamlMapping | None:
             hint = did_you_mean(key.text, OWN_KEYS)
             if hint.startswith("Did"):
                 problems.add(key.place, "unknown-key", f"'{key.text}' is no key of an entry's front matter.", hint)
-    return node if node.get("date") is not None else None
+    if node.get("date") is None:
+        _date_missing(written, problems)
+        return None
+    return node
 
 
 def _date_missing(written: EntryText, problems: Problems) -> None:
@@ -129,15 +132,13 @@ def _block(path: str, number: int, fence: Fence, kinds: Mapping[str, Kind], prob
         hint = did_you_mean(fence.kind, kinds)
         problems.add(block.place, "unknown-kind", f"'{fence.kind}' is no kind of block.", hint)
         return block
+    if not fence.closed:
+        # What follows an unclosed fence is prose as likely as YAML: one fault is enough.
+        return block
     before = len(problems)
     node = read_yaml(fence.text, path, fence.first_line, fence.indent, problems)
-    if node is None:
-        if len(problems) == before and fence.closed:
-            problems.add(block.place, "empty-block", f"This {kind.word} block is empty.", "The README has examples.")
-        return block
-    items = _items(node, kind, problems)
-    sound = len(problems) == before and fence.closed
-    return Block(path, fence.kind, number, fence.line, fence.last_line, fence.text, items if sound else ())
+    items = () if node is None else _items(node, kind, problems)
+    return replace(block, items=items) if len(problems) == before else block
 
 
 def _items(node: Node, kind: Kind, problems: Problems) -> tuple[Values, ...]:

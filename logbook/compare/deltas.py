@@ -2,16 +2,18 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection, Iterable, Mapping, Sequence
+from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
 from math import isnan, sqrt
 
 from logbook.compare.equal import in_rbw, why_not_comparable
 from logbook.compare.verdicts import GONE, NEW, NOT_COMPARABLE, NOT_STATED, SAME, Rules, delta_verdict
 from logbook.findings import BudgetRow, Delta
+from logbook.hardware import Chain
 from logbook.model import PREDICTED, Parts, Result, Source, result_key, standard_uncertainty
 from logbook.physics.uncertainty import difference
-from logbook.prediction import Estimate, Prediction
+from logbook.prediction import Estimate, Prediction, Terms
 from logbook.quantities import Better, known_quantity
+from logbook.revision import Revision
 
 ByKey = Mapping[str, Sequence[Result]]
 
@@ -180,6 +182,21 @@ def predicted_deltas(before: Prediction, after: Prediction, from_: str, to: str,
         delta = _predicted(name, after.chain.name, old, new, from_, to, rules)
         if delta is not None:
             found.append(delta)
+    return found
+
+
+def chain_deltas(
+    revision: Revision, parent: Revision | None, predict: Callable[[Chain, Terms], Prediction], rules: Rules
+) -> list[Delta]:
+    """The predicted deltas of every chain that a revision has in common with its parent."""
+    if parent is None:
+        return []
+    found: list[Delta] = []
+    for name, chain in revision.chains.items():
+        before = parent.chains.get(name)
+        if before is not None:
+            old, new = predict(before, Terms()), predict(chain, Terms())
+            found += predicted_deltas(old, new, parent.label, revision.label, rules)
     return found
 
 

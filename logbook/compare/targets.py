@@ -82,9 +82,7 @@ def _predicted(target: Target, chain: Chain | None, predict: Predict) -> _Value:
     nan = float("nan")
     if chain is None:
         return _Value(PREDICTED, nan, None, "not measured, and there is no chain to predict it from")
-    estimate = predict(chain, target.terms).totals.get(
-        target.quantity
-    )
+    estimate = predict(chain, target.terms).totals.get(target.quantity)
     if estimate is None or target.name:
         return _Value(PREDICTED, nan, None, "not measured yet")
     words = f"not known: {estimate.words}" if isnan(estimate.value) else ""

@@ -5,10 +5,8 @@ from __future__ import annotations
 from math import isnan
 
 from logbook.book import Book
-from logbook.compare.deltas import predicted_deltas
+from logbook.compare.deltas import chain_deltas
 from logbook.compare.next_change import next_change
-from logbook.compare.targets import weigh
-from logbook.compare.verdicts import MEETS, Rules
 from logbook.findings import Delta
 from logbook.model import BUILT, PLANNED, PREDICTED
 from logbook.pages.links import entry_link
@@ -25,8 +23,9 @@ from logbook.showing.deltas import (
     revision_change,
     shares_pieces,
 )
-from logbook.showing.next_change import next_change_pieces, weighed_table
-from logbook.showing.targets import target_words, targets_table
+from logbook.showing.next_change import next_change_pieces
+from logbook.showing.plans import plan_pieces
+from logbook.showing.targets import targets_table
 from logbook.showing.words import change, reason, result_words
 
 
@@ -116,13 +115,7 @@ def _planned(book: Book, revision: Revision) -> list[Delta]:
     if plan is None:
         return []
     parent = book.revisions.get(plan.comes_from or "")
-    found: list[Delta] = []
-    rules = Rules(book.settings.coverage, book.settings.matters)
-    for name, chain in plan.chains.items():
-        before = parent.chains.get(name) if parent is not None else None
-        if before is not None and parent is not None:
-            old, new = book.predict(before, Terms()), book.predict(chain, Terms())
-            found += predicted_deltas(old, new, parent.label, plan.label, rules)
+    found = chain_deltas(plan, parent, book.predict, book.rules)
     return [d for d in found if d.verdict != "same"]
 
 
@@ -160,19 +153,13 @@ def _targets(book: Book, revision: Revision) -> list[Piece]:
 
 
 def _alternatives(book: Book, revision: Revision) -> list[Piece]:
-    parent = book.revisions.get(revision.comes_from or "")
-    if parent is None or revision.state != PLANNED:
+    plan = revision if revision.state == PLANNED else revision.planned
+    if plan is None:
         return []
-    title = "Alternatives weighed" if revision.alternatives else "Can this plan reach the targets?"
-    pieces: list[Piece] = [Heading(2, title)]
-    for before in book.findings.targets_of(parent.label):
-        if before.verdict == MEETS or isnan(before.value):
-            continue
-        weighed = weigh(revision, parent, before, book.predict)
-        if weighed:
-            caption = f"{target_words(before.target)} {before.target.written}"
-            pieces.append(weighed_table(weighed, caption))
-    return pieces if len(pieces) > 1 else []
+    parent = book.revisions.get(plan.comes_from or "")
+    pieces = plan_pieces(plan, parent, book.findings, book.predict)
+    title = "Ways weighed in the plan" if plan.alternatives else "Can the plan reach the targets?"
+    return [Heading(2, title), *pieces] if pieces else []
 
 
 def _agreement(book: Book, revision: Revision) -> list[Piece]:

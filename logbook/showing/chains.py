@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from math import isfinite, isnan
 
+from logbook.compare.deltas import chain_deltas
 from logbook.hardware import Chain, Stage, changed_stages
 from logbook.kind import Outcome, View
-from logbook.model import Block
+from logbook.model import PLANNED, Block
 from logbook.physics.noise import density_from_temperature, noise_power_dbm
 from logbook.pieces import (
     Axis,
@@ -26,6 +27,7 @@ from logbook.pieces import (
 from logbook.prediction import Prediction, Terms
 from logbook.quantity_display import show_frequency, show_value
 from logbook.showing.deltas import deltas_table
+from logbook.showing.plans import plan_pieces
 from logbook.showing.words import decibels, percent, quantity_words
 
 
@@ -57,10 +59,14 @@ def show_change(block: Block, outcome: Outcome, view: View) -> list[Piece]:
         before = parent.chains.get(name) if parent is not None else None
         prediction = view.predict(revision.chains[name], Terms())
         pieces.append(diagram(prediction, before))
-        deltas = [d for d in view.findings.deltas_to(revision.label, basis="predicted") if d.chain == name]
+        # A plan's own entry shows what the plan promises, also when the label has been built since.
+        deltas = [d for d in chain_deltas(revision, parent, view.predict, view.rules) if d.chain == name]
         if deltas:
             caption = f"Predicted for chain {name}: {revision.comes_from} to {revision.label}"
             pieces.append(deltas_table(deltas, caption))
+    if revision is not None and revision.state == PLANNED:
+        parent = view.revisions.get(revision.comes_from or "")
+        pieces += plan_pieces(revision, parent, view.findings, view.predict)
     return pieces
 
 

@@ -117,5 +117,5 @@ def _budgets(results: list[Result], view: View) -> list[Piece]:
         delta = delta_of(result, view)
         if delta is not None and delta.budget:
             pieces.append(Text(result_words(result.quantity, result.at_hz, result.name)))
-            pieces += budget_pieces(delta, view.coverage)
+            pieces += budget_pieces(delta, view.rules.coverage)
     return pieces

@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass, field
+from functools import cached_property
 
-from logbook.model import Conditions, Result, Source
+from logbook.model import Parts, Result, Source
 from logbook.prediction import Terms
 from logbook.problems import Place
 from logbook.quantities import Better
@@ -28,7 +30,26 @@ class BudgetRow:
         return abs(self.u * self.sensitivity)
 
 
-@dataclass(frozen=True, slots=True)
+# What is left of a difference by rounding alone, relative to what cancelled.
+CANCELLED = 1e-9
+
+
+def budget(before: Parts | None, after: Parts | None) -> tuple[BudgetRow, ...]:
+    """Each source's share in the doubt of a difference, largest first; a source on both sides cancels."""
+    rows = []
+    old, new = before or {}, after or {}
+    for source in dict.fromkeys([*new, *old]):
+        one, other = old.get(source, 0.0), new.get(source, 0.0)
+        size = max(abs(one), abs(other))
+        if size == 0.0:
+            continue
+        left = (other - one) / size
+        cancelled = source in old and source in new and abs(left) <= CANCELLED
+        rows.append(BudgetRow(source, size, 0.0 if cancelled else left, cancelled))
+    return tuple(sorted(rows, key=lambda row: (row.cancelled, -row.contribution)))
+
+
+@dataclass(frozen=True)
 class Delta:
     """The difference of two results with the same key. nan where not known; `why` says it in words."""
 
@@ -49,9 +70,15 @@ class Delta:
     why: str
     better: Better
     stated: bool = True
-    budget: tuple[BudgetRow, ...] = ()
+    parts_before: Parts | None = None
+    parts_after: Parts | None = None
     before_result: Result | None = None
     after_result: Result | None = None
+
+    @cached_property
+    def budget(self) -> tuple[BudgetRow, ...]:
+        """Where the doubt of the difference comes from; made when it is asked for, since few are looked at."""
+        return budget(self.parts_before, self.parts_after)
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,7 +91,7 @@ class Share:
     unit: str
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Agreement:
     """Measurement against the prediction for the reading's own conditions."""
 
@@ -78,8 +105,13 @@ class Agreement:
     unit: str
     en: float
     verdict: str
-    why: str = ""
-    shares: tuple[Share, ...] = ()
+    why: str
+    explain: Callable[[], tuple[Share, ...]]
+
+    @cached_property
+    def shares(self) -> tuple[Share, ...]:
+        """Where the difference could come from; made when it is asked for."""
+        return self.explain()
 
 
 @dataclass(frozen=True, slots=True)
@@ -204,20 +236,3 @@ class Spread:
     difference: float
     u: float
     unit: str
-
-
-__all__ = [
-    "Accept",
-    "Agreement",
-    "BudgetRow",
-    "Conditions",
-    "Delta",
-    "Findings",
-    "Regression",
-    "Share",
-    "Spread",
-    "Target",
-    "TargetVerdict",
-    "Todo",
-    "TodoWords",
-]

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import partial
 from math import isfinite, isnan
 
 from logbook.compare.verdicts import AGREES, DISAGREES, NOT_STATED, Rules
@@ -76,7 +77,7 @@ def agreement(result: Result, chain: Chain, predict: Predict, rules: Rules) -> A
         en=en,
         verdict=verdict,
         why=why,
-        shares=_shares(difference, estimate, chain, u_measured or 0.0),
+        explain=partial(_shares, difference, estimate, chain, u_measured or 0.0),
     )
 
 

@@ -7,18 +7,15 @@ from math import isnan, sqrt
 
 from logbook.compare.equal import in_rbw, why_not_comparable
 from logbook.compare.verdicts import GONE, NEW, NOT_COMPARABLE, NOT_STATED, SAME, Rules, delta_verdict
-from logbook.findings import BudgetRow, Delta
+from logbook.findings import CANCELLED, Delta
 from logbook.hardware import Chain
-from logbook.model import PREDICTED, Parts, Result, Source, result_key, standard_uncertainty
+from logbook.model import PREDICTED, Parts, Result, result_key, standard_uncertainty
 from logbook.physics.uncertainty import difference
 from logbook.prediction import Estimate, Prediction, Terms
 from logbook.quantities import Better, known_quantity
 from logbook.revision import Revision
 
 ByKey = Mapping[str, Sequence[Result]]
-
-# A part that is left of a difference by rounding alone (in the number's own unit, relative to what cancelled).
-_CANCELLED = 1e-9
 
 
 def by_key(results: Iterable[Result]) -> dict[str, list[Result]]:
@@ -72,7 +69,8 @@ def measured_delta(before: Result, after: Result, why: str, rules: Rules, to: st
         why=said,
         better=after.better,
         stated=stated,
-        budget=budget(before.parts, after.parts),
+        parts_before=before.parts,
+        parts_after=after.parts,
         before_result=before,
         after_result=after,
     )
@@ -108,22 +106,7 @@ def _left(parts: Parts | None, after: Parts | None, before: Parts | None) -> flo
         return None
     scale = sqrt(sum(p * p for side in (after, before) for p in (side or {}).values()))
     u = standard_uncertainty(parts) or 0.0
-    return 0.0 if u <= _CANCELLED * scale else u
-
-
-def budget(before: Parts | None, after: Parts | None) -> tuple[BudgetRow, ...]:
-    """Each source's share in the doubt of a difference; a source on both sides cancels."""
-    rows = []
-    old, new = before or {}, after or {}
-    for source in dict.fromkeys([*new, *old]):
-        one, other = old.get(source, 0.0), new.get(source, 0.0)
-        size = max(abs(one), abs(other))
-        if size == 0.0:
-            continue
-        left = (other - one) / size
-        cancelled = source in old and source in new and abs(left) <= _CANCELLED
-        rows.append(BudgetRow(source, size, 0.0 if cancelled else left, cancelled))
-    return tuple(sorted(rows, key=lambda row: (row.cancelled, -row.contribution)))
+    return 0.0 if u <= CANCELLED * scale else u
 
 
 def measured_deltas(
@@ -237,10 +220,6 @@ def _predicted(
         why=why,
         better=better,
         stated=u is not None,
-        budget=budget(old_parts, new_parts),
+        parts_before=old_parts,
+        parts_after=new_parts,
     )
-
-
-def sources_of(parts: Parts | None) -> list[Source]:
-    """The sources of a doubt, largest first."""
-    return sorted(parts or {}, key=lambda source: -abs((parts or {})[source]))

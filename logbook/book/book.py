@@ -102,6 +102,7 @@ def make_book(sources: Iterable[SourceFile], folder: Path | None, settings: Sett
 
     def predicted(chain: Chain, terms: Terms) -> Prediction:
         # By identity: chains are frozen and shared between revisions; hashing them whole costs more than predicting.
+        terms = terms.for_chain(chain)
         key = (id(chain), terms)
         if key not in known:
             known[key] = (chain, predict(chain, terms))

@@ -39,6 +39,7 @@ class Copies:
         self._doubts = list(_doubts(chain, terms))
         self.sources = [parameter.source for _, _, parameter in self._doubts]
         self.count = 1 + 2 * len(self._doubts)
+        self._shifts = {(i, name): (k, p.u or 0.0) for k, (i, name, p) in enumerate(self._doubts)}
 
     def column(self, index: int, name: str, default: float = float("nan")) -> Array:
         """One parameter of one stage over all copies."""
@@ -51,10 +52,11 @@ class Copies:
 
     def _spread(self, index: int, name: str, value: float) -> Array:
         column = np.full(self.count, value)
-        for k, (where, what, parameter) in enumerate(self._doubts):
-            if where == index and what == name and parameter.u is not None:
-                column[1 + 2 * k] += parameter.u
-                column[2 + 2 * k] -= parameter.u
+        shift = self._shifts.get((index, name))
+        if shift is not None:
+            k, u = shift
+            column[1 + 2 * k] += u
+            column[2 + 2 * k] -= u
         return column
 
     def estimate(self, name: str, values: Array, words: str = "") -> Estimate:

@@ -38,6 +38,13 @@ class Terms:
     bandwidth_hz: float | None = None
     source_temperature_k: float | None = None
 
+    def for_chain(self, chain: Chain) -> Terms:
+        """The same terms with what is the chain's own left to it, so that one prediction serves for both."""
+        at = None if self.at_hz == chain.signal_hz else self.at_hz
+        own = chain.bandwidth_hz
+        same_width = own is not None and own.u is None and own.value == self.bandwidth_hz
+        return Terms(at, None if same_width else self.bandwidth_hz, self.source_temperature_k)
+
 
 @dataclass(frozen=True, slots=True)
 class Estimate:

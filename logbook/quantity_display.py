@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from decimal import Decimal
+from functools import lru_cache
 from math import floor, isfinite, log10
 
 NOT_KNOWN = "not known"
@@ -110,6 +111,7 @@ def _is_currency(unit: str) -> bool:
     return len(unit) == 3 and unit.isalpha() and unit.isupper()
 
 
+@lru_cache(maxsize=4096)
 def _shortest(hz: float) -> tuple[str, str]:
     if not isfinite(hz):
         return NOT_KNOWN, ""

@@ -28,16 +28,19 @@ def by_key(results: Iterable[Result]) -> dict[str, list[Result]]:
 
 def best_pair(before: Sequence[Result], after: Sequence[Result]) -> tuple[Result, Result, str]:
     """The pair to compare: on equal terms if there is one, on the same bench if there is one, the latest ones."""
-
-    def rank(pair: tuple[int, int]) -> tuple[bool, bool, int, int]:
-        old, new = before[pair[0]], after[pair[1]]
-        one, other = old.conditions, new.conditions
-        same_bench = (one.bench, one.bench_from) == (other.bench, other.bench_from)
-        return not why_not_comparable(old, new), same_bench, pair[1], pair[0]
-
-    best = max(((i, j) for i in range(len(before)) for j in range(len(after))), key=rank)
-    old, new = before[best[0]], after[best[1]]
-    return old, new, why_not_comparable(old, new)
+    best: tuple[tuple[bool, bool], Result, Result, str] | None = None
+    # From the latest backwards, so that the first pair of the best sort is the one; as a rule it is the very first.
+    for new in reversed(after):
+        for old in reversed(before):
+            why = why_not_comparable(old, new)
+            one, other = old.conditions, new.conditions
+            rank = (not why, (one.bench, one.bench_from) == (other.bench, other.bench_from))
+            if best is None or rank > best[0]:
+                best = (rank, old, new, why)
+            if all(rank):
+                return old, new, why
+    assert best is not None
+    return best[1:]
 
 
 def measured_delta(before: Result, after: Result, why: str, rules: Rules, to: str = "", from_: str = "") -> Delta:

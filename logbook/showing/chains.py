@@ -26,6 +26,7 @@ from logbook.pieces import (
 )
 from logbook.prediction import Prediction, Terms
 from logbook.quantity_display import show_frequency, show_value
+from logbook.showing.cautions import power_caution
 from logbook.showing.deltas import deltas_table
 from logbook.showing.plans import plan_pieces
 from logbook.showing.words import decibels, percent, quantity_words
@@ -217,7 +218,7 @@ def shares_picture(prediction: Prediction) -> Picture | None:
 
 def warnings(prediction: Prediction) -> list[Piece]:
     """What the reader must know before the numbers: unknown noise, a lineup that falls short, external noise."""
-    pieces: list[Piece] = []
+    pieces = power_caution(node.level_dbm for node in prediction.nodes)
     if prediction.noise_unknown_from:
         stage = prediction.noise_unknown_from
         words = f"The noise is not known from {stage} on: it has gain and no noise figure is given."

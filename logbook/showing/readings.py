@@ -10,6 +10,7 @@ from logbook.kind import Outcome, View
 from logbook.model import PREDICTED, Block, Result
 from logbook.pieces import Items, Line, Muted, Note, Piece, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_value
+from logbook.showing.cautions import result_cautions
 from logbook.showing.deltas import agreement_table, budget_pieces, folded, shares_pieces
 from logbook.showing.words import change, plain, reason, result_words
 
@@ -19,7 +20,7 @@ def show_results(block: Block, outcome: Outcome, view: View) -> list[Piece]:
     results = list(outcome.results)
     if not results:
         return []
-    pieces: list[Piece] = [results_table(results, view)]
+    pieces = [*result_cautions(results), results_table(results, view)]
     pieces += [Text(("Conditions: ", Muted(words))) for words in _conditions(results)]
     pieces += [Note(note, "caution") for note in dict.fromkeys(n for r in results for n in r.notes)]
     pieces += folded("How these values come onto equal terms", _corrections(results))

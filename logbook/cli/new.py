@@ -24,7 +24,7 @@ _LETTERS = str.maketrans(
 
 def new(title: str, path: str | None, day: str | None, revision: str | None, state: str | None) -> int:
     """Write a new entry and print its path; a file that is there already is never touched."""
-    words = " ".join(title.split())
+    words = " ".join("".join(c for c in title if c.isspace() or _shown(c)).split())
     if not words:
         raise UsageError("An entry needs a title, such as: logbook new 'First light'")
     if state is not None and revision is None:
@@ -34,6 +34,12 @@ def new(title: str, path: str | None, day: str | None, revision: str | None, sta
     text = _entry(folder, name, words, revision, state)
     print(_written(folder, name, text).as_posix())
     return IN_ORDER
+
+
+def _shown(character: str) -> bool:
+    """Control characters and the like have no place in a title; what joins letters or emoji has."""
+    category = unicodedata.category(character)
+    return character != "\ufeff" and (category[0] != "C" or category == "Cf")
 
 
 def _date(written: str | None) -> date:

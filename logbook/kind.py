@@ -49,9 +49,9 @@ class Session:
     earlier: Mapping[tuple[str, str], Sequence[Earlier]] = field(default_factory=dict)
     lost_chains: tuple[str, ...] = ()
 
-    def fault(self, place: Place, code: str, message: str, hint: str = "") -> None:
-        """Report a fault of this block."""
-        self.problems.add(place, code, message, hint)
+    def fault(self, place: Place, code: str, message: str, hint: str = "", about: str = "") -> None:
+        """Report a fault of this block; `about` names what was looked for and is not there."""
+        self.problems.add(place, code, message, hint, about=about)
 
     def chain_name(self, values: Values) -> str | None:
         """The chain that `values` speak of: the one named, or the only one; None with a fault when unclear."""
@@ -65,7 +65,7 @@ class Session:
             return None
         if known and named not in known and not self.broken:
             message = f"'{named}' is no chain of revision {self.label}."
-            self.fault(values.place("chain"), "unknown-chain", message, did_you_mean(named, known))
+            self.fault(values.place("chain"), "unknown-chain", message, did_you_mean(named, known), named)
             return None
         return named
 
@@ -81,7 +81,7 @@ class Session:
             return None
         if named not in self.benches:
             message = f"No bench '{named}' is described up to {self.entry.date}."
-            self.fault(values.place("bench"), "unknown-bench", message, did_you_mean(named, self.benches))
+            self.fault(values.place("bench"), "unknown-bench", message, did_you_mean(named, self.benches), named)
         return self.benches.get(named)
 
     @property

@@ -9,6 +9,9 @@ from difflib import get_close_matches
 PROBLEM = "problem"
 CAUTION = "caution"
 
+# For faults that any other fault may have caused.
+ANY_FAULT = "*"
+
 
 @dataclass(frozen=True, order=True, slots=True)
 class Place:
@@ -24,13 +27,17 @@ class Place:
 
 @dataclass(frozen=True, order=True, slots=True)
 class Problem:
-    """One fault: `code` is stable, `message` quotes what is there, `hint` says what to do."""
+    """One fault: `code` is stable, `message` quotes what is there, `hint` says what to do.
+
+    `about` names what was looked for and not found, when it may be missing only because another block is at fault.
+    """
 
     place: Place
     code: str
     message: str
     hint: str = ""
     severity: str = PROBLEM
+    about: str = ""
 
     def __str__(self) -> str:
         said = f"{self.message} {self.hint}".strip()
@@ -43,9 +50,11 @@ class Problems:
     def __init__(self) -> None:
         self._found: dict[Problem, None] = {}
 
-    def add(self, place: Place, code: str, message: str, hint: str = "", severity: str = PROBLEM) -> None:
+    def add(
+        self, place: Place, code: str, message: str, hint: str = "", severity: str = PROBLEM, about: str = ""
+    ) -> None:
         """Keep one more fault; the same one said twice is kept once."""
-        self._found[Problem(place, code, message, hint, severity)] = None
+        self._found[Problem(place, code, message, hint, severity, about)] = None
 
     def extend(self, problems: Iterable[Problem]) -> None:
         """Keep faults that were found elsewhere."""
@@ -53,7 +62,13 @@ class Problems:
 
     def within(self, file: str, first_line: int, last_line: int) -> list[Problem]:
         """The faults on these lines of a file, in order."""
-        return [p for p in self if p.place.file == file and first_line <= p.place.line <= last_line]
+        there = [p for p in self._found if p.place.file == file and first_line <= p.place.line <= last_line]
+        return sorted(there)
+
+    def drop(self, problems: Iterable[Problem]) -> None:
+        """Forget faults that turned out to follow from others."""
+        for problem in problems:
+            self._found.pop(problem, None)
 
     def __iter__(self) -> Iterator[Problem]:
         return iter(sorted(self._found))

@@ -8,6 +8,7 @@ from pathlib import Path
 
 from logbook.book.calculating import Calculated, calculate
 from logbook.book.comparing import compare_all
+from logbook.book.consequences import drop_consequences
 from logbook.book.history import History, read_history
 from logbook.book.reading import ReadFile, read_file
 from logbook.book.sources import SourceFile, file_reader
@@ -115,4 +116,5 @@ def make_book(sources: Iterable[SourceFile], folder: Path | None, settings: Sett
     calculated = calculate(history, kinds, problems, reader, predicted)
     rules = Rules(settings.coverage, settings.matters)
     findings = compare_all(history, calculated.results, predicted, rules, problems)
+    drop_consequences(files.values(), problems)
     return Book(settings, files, history, calculated, findings, problems, predicted)

@@ -103,7 +103,7 @@ def _todo(history: History, problems: Problems) -> list[Todo]:
             known = items.get(name)
             if known is None:
                 message = f"No item '{name}' was opened up to {entry.date}."
-                problems.add(place, "unknown-item", message, did_you_mean(name, items))
+                problems.add(place, "unknown-item", message, did_you_mean(name, items), about=name)
             elif known.closed is not None:
                 problems.add(place, "closed-twice", f"Item '{name}' was closed already in {known.closed}.")
             else:

@@ -123,7 +123,9 @@ class _Maker:
         if kind.needs_revision and self.revision is None:
             if self.entry.revision is None:
                 message = f"A {kind.word} block speaks of a revision, and none is built up to {self.entry.date}."
-                self.problems.add(block.place, "no-revision", message, "Add 'revision: A' to the front matter.")
+                self.problems.add(
+                    block.place, "no-revision", message, "Add 'revision: A' to the front matter.", about="revision"
+                )
             return
         if kind.declare is None:
             return

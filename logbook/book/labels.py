@@ -47,7 +47,7 @@ class Labels:
         if not _makes(entry) and "from" not in entry.places and self.revisions and entry.state == BUILT:
             message = f"Nothing makes revision '{label}': there is no chain or change block, and no 'from'."
             hint = did_you_mean(label, self.revisions)
-            self.problems.add(entry.places["revision"], "unknown-revision", message, hint)
+            self.problems.add(entry.places["revision"], "unknown-revision", message, hint, about=label)
             return None
         sound, parent = self._parent(entry, label)
         if not sound:
@@ -80,7 +80,7 @@ class Labels:
             return False, None
         if parent is None:
             message = f"'{written}' is no revision made before this entry."
-            self.problems.add(place, "unknown-revision", message, did_you_mean(written, self.revisions))
+            self.problems.add(place, "unknown-revision", message, did_you_mean(written, self.revisions), about=written)
             return False, None
         return self._may_inherit(entry, parent, place), written
 

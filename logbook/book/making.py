@@ -59,7 +59,7 @@ def _change(change: Change, block: Block, revision: Revision, parent: Revision |
     if before is None:
         if parent is None or not parent.broken:
             message = f"There is no chain '{name}' before this change."
-            problems.add(change.values.place("chain"), "no-chain", message, "Write it as a chain block.")
+            problems.add(change.values.place("chain"), "no-chain", message, "Write it as a chain block.", about=name)
         revision.chains.pop(name, None)
         revision.broken.add(name)
         return
@@ -68,7 +68,7 @@ def _change(change: Change, block: Block, revision: Revision, parent: Revision |
         planned = revision.planned.made.get(name) if revision.planned is not None else None
         if planned is None:
             message = f"No planned entry holds a change of chain '{name}' under the label '{revision.label}'."
-            problems.add(change.values.place("as_planned"), "no-plan", message)
+            problems.add(change.values.place("as_planned"), "no-plan", message, about=revision.label)
             revision.broken.add(name)
             return
         steps = planned.steps

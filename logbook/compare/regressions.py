@@ -10,7 +10,7 @@ from logbook.compare.equal import why_not_comparable
 from logbook.compare.verdicts import MEETS, MISSES, NOT_COMPARABLE, SAME, WORSE, Rules
 from logbook.findings import Accept, Delta, Regression, Spread, TargetVerdict
 from logbook.model import PREDICTED, Result
-from logbook.problems import Problems, did_you_mean
+from logbook.problems import ANY_FAULT, Problems, did_you_mean
 
 
 def regressions(
@@ -95,7 +95,7 @@ def _accepts_nothing(accept: Accept, found: Sequence[_Found], problems: Problems
     there = sorted({each.quantity for each in found if each.to == accept.revision})
     message = f"'{accept.quantity}' is accepted, and revision {accept.revision} has no such regression."
     hint = did_you_mean(accept.quantity, there) if there else f"Revision {accept.revision} has no regression at all."
-    problems.add(accept.place, "accepts-nothing", message, hint)
+    problems.add(accept.place, "accepts-nothing", message, hint, about=ANY_FAULT)
 
 
 def spreads(results: Mapping[str, Sequence[Result]], rules: Rules) -> list[Spread]:

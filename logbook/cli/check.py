@@ -10,9 +10,8 @@ from logbook.book import Book, find_sources, make_book
 from logbook.cli.place import find_place
 from logbook.cli.printing import print_problems
 from logbook.cli.status import FAILED, IN_ORDER, PROBLEMS, UsageError
-from logbook.compare.verdicts import MISSES
-from logbook.options import REGRESSION, TARGET, OptionError, Options, read_coverage, read_fail_on
-from logbook.problems import CAUTION
+from logbook.failing import failures
+from logbook.options import PROBLEM, OptionError, Options, read_coverage, read_fail_on
 
 
 def check(path: str | None, results: str | None, fail_on: str | None, coverage: str | None, *, quiet: bool) -> int:
@@ -47,15 +46,9 @@ def with_arguments(options: Options, fail_on: str | None, coverage: str | None) 
 
 def status_of(book: Book, fail_on: frozenset[str]) -> int:
     """Problems come first and always count: what is computed from faulty input cannot be relied on."""
-    if any(problem.severity != CAUTION for problem in book.problems):
+    if failures(book, frozenset({PROBLEM})):
         return PROBLEMS
-    if REGRESSION in fail_on and any(not found.accepted for found in book.findings.regressions):
-        return FAILED
-    latest = book.latest
-    if TARGET in fail_on and latest is not None:
-        missed = any(verdict.verdict == MISSES for verdict in book.findings.targets_of(latest.label))
-        return FAILED if missed else IN_ORDER
-    return IN_ORDER
+    return FAILED if failures(book, fail_on) else IN_ORDER
 
 
 def _write_results(book: Book, file: Path) -> None:

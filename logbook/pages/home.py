@@ -14,7 +14,7 @@ from logbook.quantity_display import show_delta, show_value
 from logbook.revision import Revision
 from logbook.showing.deltas import deltas_table
 from logbook.showing.targets import missing_words, probability_words, target_words
-from logbook.showing.words import revision_link
+from logbook.showing.words import difference_unit, revision_link
 
 _EMPTY = "There is no entry yet. Start one in a terminal with: logbook new"
 
@@ -60,8 +60,7 @@ def _trend(book: Book, latest: Revision, target: Target) -> str:
         then = next((v for v in book.findings.targets_of(ancestor.label) if v.target.key == target.key), None)
         if now is None or then is None or then.basis != now.basis or isnan(then.value) or isnan(now.value):
             continue
-        unit = "dB" if target.unit.startswith("dB") else target.unit
-        return f"{show_delta(now.value - then.value, unit)} since {ancestor.label}"
+        return f"{show_delta(now.value - then.value, difference_unit(target.unit))} since {ancestor.label}"
     return ""
 
 

@@ -26,7 +26,7 @@ from logbook.showing.deltas import (
 from logbook.showing.next_change import next_change_pieces
 from logbook.showing.plans import plan_pieces
 from logbook.showing.targets import targets_table
-from logbook.showing.words import change, reason, result_words
+from logbook.showing.words import change, difference_unit, reason, result_words
 
 
 def revision_pieces(book: Book, revision: Revision) -> list[Piece]:
@@ -74,7 +74,7 @@ def regression_pieces(book: Book, revision: Revision, keys: set[str] | None = No
     for found in book.findings.regressions_of(revision.label):
         if keys is not None and found.key not in keys:
             continue
-        unit = "dB" if found.unit.startswith("dB") else found.unit
+        unit = difference_unit(found.unit)
         size = "" if found.delta is None or isnan(found.delta) else f" by {show_value(abs(found.delta), unit)}"
         what = "a target met before is missed now" if found.kind == "target" else f"worse{size}"
         said = f"accepted: {found.why}" if found.accepted else "not accepted"
@@ -172,7 +172,7 @@ def _agreement(book: Book, revision: Revision) -> list[Piece]:
                 pieces += shares_pieces(each)
     for spread in book.findings.spreads:
         if spread.revision == revision.label:
-            unit = "dB" if spread.unit.startswith("dB") else spread.unit
+            unit = difference_unit(spread.unit)
             words = (
                 f"Two readings of {spread.key} on {revision.label} differ by {show_delta(spread.difference, unit)}, "
             )

@@ -8,7 +8,7 @@ from math import isnan
 from logbook.findings import Agreement, Delta
 from logbook.pieces import Folded, Line, Piece, Span, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_value
-from logbook.showing.words import change, percent, plain, reason, result_words, revision_link
+from logbook.showing.words import change, difference_unit, percent, plain, reason, result_words, revision_link
 
 
 def deltas_table(deltas: Iterable[Delta], caption: str, *, chains: bool = False) -> Table:
@@ -36,7 +36,7 @@ def budget_pieces(delta: Delta, k: float) -> list[Piece]:
     for row in delta.budget:
         said = "common to both: cancels" if row.cancelled else f"{row.contribution:.3g}"
         rows.append((row.source.words, f"{row.u:.3g}", f"{row.sensitivity:+.3g}", said))
-    unit = _difference_unit(delta.unit)
+    unit = difference_unit(delta.unit)
     head = ("source", f"u, {unit}", "sensitivity", f"contribution, {unit}")
     table = Table(head, tuple(rows), "Where the doubt of the change comes from", frozenset({1, 2, 3}))
     if delta.u is None:
@@ -56,18 +56,13 @@ def agreement_table(found: Sequence[Agreement], caption: str = "Measured against
                 result_words(a.result.quantity, a.result.at_hz, a.result.name),
                 plain(a.measured, a.unit, a.u_measured),
                 plain(a.predicted, a.unit, a.u_predicted),
-                show_delta(a.measured - a.predicted, _difference_unit(a.unit)),
+                show_delta(a.measured - a.predicted, difference_unit(a.unit)),
                 en,
                 (Verdict(a.verdict), " ", reason(a.why)) if a.why else Verdict(a.verdict),
             )
         )
     head = ("quantity", "measured", "predicted", "difference", "E_n", "verdict")
     return Table(head, tuple(rows), caption, frozenset({1, 2, 3, 4}))
-
-
-def _difference_unit(unit: str) -> str:
-    """The unit of a difference: of levels a ratio in dB."""
-    return "dB" if unit in ("dBm", "dBm/Hz", "dBc", "dBc/Hz", "dBuV") else unit
 
 
 def shares_pieces(found: Agreement) -> list[Piece]:

@@ -9,7 +9,7 @@ from logbook.compare.targets import Weighed
 from logbook.pieces import Line, Note, Piece, Strong, Table, Text
 from logbook.quantity_display import show_delta, show_value
 from logbook.showing.targets import target_words
-from logbook.showing.words import percent
+from logbook.showing.words import difference_unit, percent
 
 
 def next_change_pieces(found: NextChange) -> list[Piece]:
@@ -32,12 +32,8 @@ def _start(found: NextChange) -> str:
     unit = found.verdict.target.unit
     words = f"{found.verdict.basis} {show_value(found.verdict.value, unit, found.verdict.u)}"
     if found.offset:
-        words += f", {show_delta(found.offset, _difference(unit))} from the prediction, which is taken to stay"
+        words += f", {show_delta(found.offset, difference_unit(unit))} from the prediction, which is taken to stay"
     return f"{words}. To meet it with 95 % probability the prediction must reach {show_value(found.wanted, unit)}."
-
-
-def _difference(unit: str) -> str:
-    return "dB" if unit.startswith("dB") else unit
 
 
 def _row(row: StageNeeds, found: NextChange, unit: str) -> tuple[Line, ...]:

@@ -8,7 +8,7 @@ from math import isnan
 from logbook.findings import Target, TargetVerdict
 from logbook.pieces import Line, Muted, Span, Table, Verdict
 from logbook.quantity_display import show_frequency, show_value
-from logbook.showing.words import plain, result_words
+from logbook.showing.words import difference_unit, plain, result_words
 
 
 def target_words(target: Target) -> str:
@@ -41,7 +41,7 @@ def missing_words(verdict: TargetVerdict) -> str:
     if isnan(verdict.gap) or verdict.gap <= 0:
         return ""
     unit = verdict.target.unit
-    return f"{show_value(verdict.gap, 'dB' if unit.startswith('dB') else unit)} missing"
+    return f"{show_value(verdict.gap, difference_unit(unit))} missing"
 
 
 def targets_table(targets: Sequence[Target], verdicts: Mapping[str, TargetVerdict], label: str) -> Table:

@@ -58,7 +58,12 @@ def verdict(delta: Delta) -> Verdict:
 
 def change(delta: Delta) -> str:
     """A delta with its doubt and sign."""
-    return "" if isnan(delta.delta) else show_delta(delta.delta, delta.unit, delta.u)
+    return "" if isnan(delta.delta) else show_delta(delta.delta, difference_unit(delta.unit), delta.u)
+
+
+def difference_unit(unit: str) -> str:
+    """The unit of a difference: of levels and densities it is a ratio in dB, of temperatures K."""
+    return {"degC": "K"}.get(unit, "dB" if unit.startswith("dB") else unit)
 
 
 def revision_link(label: str) -> Link:

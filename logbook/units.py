@@ -63,6 +63,7 @@ def _dimensions() -> dict[str, Dimension]:
         ("capacitance", "F", "a capacitance", "100 pF", "pF nF uF"),
         ("inductance", "H", "an inductance", "220 nH", "nH uH mH"),
         ("length", "m", "a length", "1.5 m", "m mm cm"),
+        ("divisions", "div", "a number of divisions", "3.2 div", "div"),
         ("voltage_ratio", "V/V", "a ratio of voltages", "0.5 V/V", "V/V mV/V uV/V"),
     )
     return {
@@ -153,6 +154,7 @@ def _others() -> list[Unit]:
         Unit("dB/V", "gain_slope", 1.0, 0.0, "dB/V"),
         Unit("dB/mV", "gain_slope", 1e3, 0.0, "dB/V", 3),
         Unit("cm", "length", 0.01, 0.0, "m", -2),
+        Unit("div", "divisions", 1.0, 0.0, "div"),
         Unit("min", "time", 60.0, 0.0, "s", None),
         Unit("h", "time", 3600.0, 0.0, "s", None),
     ]

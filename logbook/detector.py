@@ -1,0 +1,44 @@
+"""A detector or display as calibrated by a staircase: what a voltage, or divisions, read at it mean."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+from logbook.hardware import Parameter
+from logbook.model import Source
+from logbook.physics.detector import DetectorFit, level_from_output
+from logbook.quantity import Quantity
+from logbook.quantity_display import show_value
+
+
+@dataclass(frozen=True, slots=True)
+class Calibration:
+    """A detector's line as of `since`; levels in dBm, output in V or divisions.
+
+    `drive` is the accuracy of the source that stepped it, common to all that is read through it. `lowest` and
+    `highest` are the levels between which it was stepped; `points` what was put in and came out.
+    """
+
+    name: str
+    since: str
+    fit: DetectorFit
+    unit: str
+    dimension: str
+    drive: Parameter | None
+    lowest_dbm: float
+    highest_dbm: float
+    points: Any = None
+
+    def level(self, output: Quantity, departure: Source) -> tuple[float, dict[Source, float], tuple[str, ...]]:
+        """The level of an output in dBm, its doubt by source (dB) without that of the output, and notes."""
+        read = level_from_output(self.fit, output.value)
+        line = Source("bench", self.name, "detector", "line", self.since)
+        parts = {line: read.u_line_db, departure: read.u_scatter_db}
+        if self.drive is not None and self.drive.u:
+            parts[self.drive.source] = self.drive.u
+        notes: tuple[str, ...] = ()
+        if not self.lowest_dbm <= read.level_dbm <= self.highest_dbm:
+            span = f"{show_value(self.lowest_dbm, 'dBm')} to {show_value(self.highest_dbm, 'dBm')}"
+            notes = (f"outside the range in which detector {self.name} was stepped ({span})",)
+        return read.level_dbm, {source: part for source, part in parts.items() if part > 0}, notes

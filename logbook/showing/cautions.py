@@ -8,13 +8,11 @@ from logbook.model import Result
 from logbook.pieces import Note, Piece
 
 RF_POWER = (
-    "Caution, RF power: it burns, and it burns out instruments. Put the loss in before the power, use a dummy load "
+    "RF power: it burns, and it burns out instruments. Put the loss in before the power, use a dummy load "
     "that bears it, and keep within your licence; local codes and licensed practice decide."
 )
-VOLTAGE = (
-    "Caution, above 50 V: it can kill. Unplug, discharge, work with one hand; local codes and licensed practice decide."
-)
-HOT = "Caution, hot parts: they injure and start fires. Let them cool, and keep what burns away from them."
+VOLTAGE = "Above 50 V: it can kill. Unplug, discharge, work with one hand; local codes and licensed practice decide."
+HOT = "Hot parts: they injure and start fires. Let them cool, and keep what burns away from them."
 
 RF_POWER_FROM_DBM = 30.0
 VOLTAGE_FROM_V = 50.0

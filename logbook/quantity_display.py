@@ -103,7 +103,7 @@ def _signed(number: str) -> str:
 
 def _shift(value: float, power: int) -> float:
     """value * 10**power, rounded once."""
-    mantissa, _, exponent = repr(value).partition("e")
+    mantissa, _, exponent = repr(float(value)).partition("e")
     return float(f"{mantissa}e{int(exponent or 0) + power}")
 
 

@@ -26,8 +26,8 @@ def propagate(
     for source, (value, u) in inputs.items():
         if u:
             above, below = (function({**values, source: value + sign * u}) for sign in (+1.0, -1.0))
-            parts[source] = (above - below) / 2.0
-    return function(values), {source: part for source, part in parts.items() if part != 0.0}
+            parts[source] = float(above - below) / 2.0
+    return float(function(values)), {source: part for source, part in parts.items() if part != 0.0}
 
 
 def curved(

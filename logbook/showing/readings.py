@@ -52,9 +52,15 @@ def results_table(results: list[Result], view: View) -> Table:
                 _verdict(delta),
             )
         )
-    label = results[0].revision
-    head = ("quantity", "as read", "on equal terms", "before", "change", "verdict")
-    return Table(head, tuple(rows), f"Results on revision {label}", frozenset({1, 2, 3, 4}))
+    as_read = any(result.shown is not None for result in results)
+    head = ("quantity", "as read", "on equal terms" if as_read else "value", "before", "change", "verdict")
+    kept = [i for i in range(len(head)) if i in (0, 2) or any(row[i] for row in rows)]
+    return Table(
+        tuple(head[i] for i in kept),
+        tuple(tuple(row[i] for i in kept) for row in rows),
+        f"Results on revision {results[0].revision}",
+        frozenset(place for place, i in enumerate(kept) if i in (1, 2, 3, 4)),
+    )
 
 
 def _value(result: Result) -> Line:

@@ -1,0 +1,191 @@
+"""`noise-vs-gain`: output noise at several settings of a gain control, split into what comes before and after it."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from math import isnan, nan, sqrt
+
+import numpy as np
+
+from logbook.fields import Field, choice, many, quantity, text
+from logbook.kind import Kind, Outcome, Session
+from logbook.kinds._measured import Setting, derived, measured, not_on_a_plan, setting_of
+from logbook.kinds.reading import AVERAGING
+from logbook.model import Block, Result, Source, Values
+from logbook.physics.noise_split import (
+    NoiseSplit,
+    equal_setting,
+    noise_after_dbm,
+    noise_ahead_dbm,
+    part_uncertainties_db,
+    split_noise,
+    told_apart,
+)
+from logbook.problems import did_you_mean
+from logbook.showing.noise_vs_gain import Split, show_noise_vs_gain
+from logbook.stage_fields import LEVEL
+
+FIELDS = (
+    Field("name", text()),
+    Field("chain", text()),
+    Field("control", text()),
+    Field("bench", text()),
+    Field("through", many(text(), least=0)),
+    Field("through_detector", text()),
+    Field("at", quantity("frequency", positive=True)),
+    Field("rbw", quantity("frequency", positive=True)),
+    Field("vbw", quantity("frequency", positive=True)),
+    Field("averaging", choice(*AVERAGING)),
+    Field("shown_at", choice("instrument", "unit")),
+    Field("temperature", quantity("temperature")),
+    Field("source_temperature", quantity("noise_temperature", positive=True)),
+    Field(
+        "settings",
+        many(quantity("ratio"), least=2),
+        required=True,
+        help="The control's gain at each reading, such as 'settings: [0 dB, 10 dB, 20 dB]'.",
+    ),
+    Field(
+        "noise",
+        many(quantity((*LEVEL, "divisions")), least=2),
+        required=True,
+        help="The output noise at each setting, such as 'noise: [-98.1 dBm, -93.2 dBm, -84.5 dBm]'.",
+    ),
+    Field("note", text()),
+)
+
+EXAMPLE = """\
+bench: shack
+at: 50.1 MHz
+rbw: 3 kHz
+averaging: power
+settings: [0 dB, 6 dB, 12 dB, 18 dB, 24 dB]
+noise: [-97.8(2) dBm, -96.2(2) dBm, -92.9(2) dBm, -87.8(2) dBm, -82.1(2) dBm]
+"""
+
+
+def calculate(block: Block, session: Session) -> Outcome:
+    """The split of every mapping."""
+    if not not_on_a_plan("read", block.place, session):
+        return Outcome()
+    found = [_one(values, session) for values in block.items]
+    sound = [each for each in found if each is not None]
+    return Outcome(tuple(result for each in sound for result in each.results), tuple(sound))
+
+
+def _one(values: Values, session: Session) -> Split | None:
+    setting = setting_of(values, session)
+    if setting is None or not _sound(values, setting, session):
+        return None
+    readings = _readings(values, setting)
+    if readings is None:
+        return None
+    settings = np.array([each.value for each in values["settings"]])
+    noise = np.array([each.value for each in readings])
+    own = [_fresh_u(each) for each in readings]
+    u = np.array([nan if each is None else each for each in own])
+    split = split_noise(settings, noise, None if np.isnan(u).any() else u)
+    apart = told_apart(split, 2.0)
+    results = _results(split, readings, values, setting) if apart else _not_known(split, readings, values, setting)
+    return Split(tuple(map(float, settings)), tuple(readings), split, apart, values.get("control", ""), results)
+
+
+def _sound(values: Values, setting: Setting, session: Session) -> bool:
+    settings, noise = values["settings"], values["noise"]
+    if len(settings) != len(noise):
+        message = f"There are {len(settings)} settings and {len(noise)} noise readings; each setting needs its reading."
+        session.fault(values.place("noise"), "lengths", message)
+        return False
+    if len({each.value for each in settings}) < 2:
+        message = "All settings are the same; the split needs the noise at two settings at least."
+        session.fault(values.place("settings"), "lengths", message, "Take settings some 10 dB apart.")
+        return False
+    chain, control = session.chains.get(setting.chain), values.get("control")
+    if chain is not None and control is not None and chain.stage(control) is None:
+        message = f"'{control}' is no stage of chain '{chain.name}' on revision {session.label}."
+        session.fault(
+            values.place("control"), "unknown-stage", message, did_you_mean(control, chain.stage_names), control
+        )
+        return False
+    if values.get("averaging") == "peak":
+        message = "Peak readings of noise say nothing of its power, so they cannot be split."
+        session.fault(values.place("averaging"), "peak", message, "Read with power averaging.")
+        return False
+    return True
+
+
+def _readings(values: Values, setting: Setting) -> list[Result] | None:
+    at = values.get("at")
+    place, found = values.place("noise"), []
+    for each in values["noise"]:
+        result = measured("output_noise", each, setting, place, None if at is None else at.value)
+        if result is None:
+            return None
+        found.append(result)
+    return found
+
+
+def _fresh_u(result: Result) -> float | None:
+    """The doubt that a reading does not share with the others; None when nothing of it is stated."""
+    own = [part for source, part in (result.parts or {}).items() if source.sort == "fresh"]
+    return sqrt(sum(part * part for part in own)) if own else None
+
+
+def _common(readings: list[Result]) -> dict[Source, float]:
+    """The doubt that all readings share moves both parts of the noise alike, by its mean over the readings."""
+    found: dict[Source, float] = {}
+    for result in readings:
+        for source, part in (result.parts or {}).items():
+            if source.sort != "fresh":
+                found[source] = found.get(source, 0.0) + part / len(readings)
+    return found
+
+
+def _results(split: NoiseSplit, readings: list[Result], values: Values, setting: Setting) -> tuple[Result, ...]:
+    """Noise from ahead (as it is at 0 dB) and from after the control, and the setting at which they are equal."""
+    common, place, at = _common(readings), values.place("noise"), readings[0].at_hz
+    u_ahead, u_after = part_uncertainties_db(split)
+    level, u_equal = equal_setting(split)
+    found = []
+    for quantity_, value, u in (
+        ("noise_ahead", noise_ahead_dbm(split), u_ahead),
+        ("noise_after", noise_after_dbm(split), u_after),
+    ):
+        parts = {**common, _own(values, quantity_): u}
+        found.append(derived(quantity_, value, "dBm", parts, setting, place, at_hz=at))
+    parts = {_own(values, "equal_setting"): u_equal}
+    found.append(derived("equal_setting", level, "dB", parts, setting, place, at_hz=at))
+    # What was read is already in the noise bandwidth of its rbw.
+    return tuple(replace(each, conditions=replace(each.conditions, averaging="power")) for each in found)
+
+
+def _own(values: Values, what: str) -> Source:
+    place = values.place("noise")
+    return Source("fresh", f"{place.file}:{place.line}", what, "least squares")
+
+
+def _not_known(split: NoiseSplit, readings: list[Result], values: Values, setting: Setting) -> tuple[Result, ...]:
+    words = "the readings do not tell the two apart"
+    if isnan(split.u_ahead_w) or isnan(split.u_after_w):
+        words = "two readings without stated doubt tell nothing of the doubt of the split"
+    found = []
+    for quantity_, unit in (("noise_ahead", "dBm"), ("noise_after", "dBm"), ("equal_setting", "dB")):
+        place, at = values.place("noise"), readings[0].at_hz
+        found.append(derived(quantity_, nan, unit, None, setting, place, at_hz=at, words=words))
+    return tuple(found)
+
+
+KIND = Kind(
+    word="noise-vs-gain",
+    title="Noise against gain",
+    about=(
+        "Output noise at several settings of a gain control: least squares splits it into what comes from ahead of the "
+        "control and what comes from after it, and says which of the two a change should attack."
+    ),
+    fields=FIELDS,
+    example=EXAMPLE,
+    many=True,
+    needs_revision=True,
+    calculate=calculate,
+    show=show_noise_vs_gain,
+)

@@ -184,7 +184,7 @@ def _dedented(line: str, prefix: str) -> str:
 def _not_closed(mark: _Mark, end: int, line_count: int, path: str, problems: Problems) -> None:
     column = len(mark.prefix) + len(mark.marker) + 1
     until = "the end of the file" if end >= line_count else f"line {end}"
-    message = f"The fence '{mark.run}{mark.info and ' ' + mark.info}' is not closed; it would run on to {until}."
+    message = f"The fence '{mark.run}{mark.info}' is not closed; it would run on to {until}."
     hint = f"Close it with a line '{mark.run}' behind its text."
     if end < line_count and not mark.kind:
         hint = f"{hint[:-1]}; a fence that shows another one needs to be longer than that."

@@ -16,10 +16,11 @@ from logbook.yaml_nodes import Sequence as YamlSequence
 
 @dataclass(frozen=True, slots=True)
 class Asked:
-    """What a reader is asked for: the key's name for messages, and where faults are collected."""
+    """What a reader is asked for: the key's name for messages, where it stands, and where faults are collected."""
 
     what: str
     problems: Problems
+    key_place: Place | None = None
 
     def fault(self, place: Place, code: str, message: str, hint: str = "") -> None:
         """Report a fault; readers then return None."""
@@ -52,13 +53,17 @@ def read_mapping(node: Node | None, fields: Sequence[Field], asked: Asked) -> Va
     data: dict[str, Any] = {}
     places: dict[str, Place] = {}
     spoiled = False
+    meant: set[str] = set()
     for key, value in node.pairs:
         if key.text not in by_name:
             hint = did_you_mean(key.text, by_name)
             asked.fault(key.place, "unknown-key", f"'{key.text}' is no key of {asked.what}.", hint)
+            meant.add(hint)
             continue
         field = by_name[key.text]
         places[key.text] = value.place
+        if isinstance(value, YamlSequence):
+            places.update((f"{key.text}.{number}", item.place) for number, item in enumerate(value.items))
         read = field.read(value, Asked(key.text, asked.problems))
         if read is None:
             spoiled = spoiled or field.required
@@ -66,15 +71,18 @@ def read_mapping(node: Node | None, fields: Sequence[Field], asked: Asked) -> Va
             data[key.text] = read
     for field in fields:
         if field.required and field.name not in places:
-            asked.fault(node.place, "missing-key", f"{asked.what} needs the key '{field.name}'.", field.help)
             spoiled = True
+            # A slip of the pen in a key that has to be there is one fault, not two.
+            if f"Did you mean '{field.name}'?" not in meant:
+                what = asked.what[:1].upper() + asked.what[1:]
+                asked.fault(node.place, "missing-key", f"{what} needs the key '{field.name}'.", field.help)
     return None if spoiled else Values(data, places, node.place)
 
 
 def _shape(node: Node) -> str:
     if isinstance(node, Scalar):
-        return f"'{node.text}'" if node.text else "nothing"
-    return "a list" if isinstance(node, YamlSequence) else "a mapping"
+        return f"'{node.text}'" if node.text else "Nothing"
+    return "A list" if isinstance(node, YamlSequence) else "A mapping"
 
 
 def _scalar(node: Node, asked: Asked, expected: str) -> Scalar | None:
@@ -218,7 +226,7 @@ def many(reader: Reader, *, least: int = 1) -> Reader:
         nodes = node.items if isinstance(node, YamlSequence) else (node,)
         found = [reader(item, asked) for item in nodes]
         if len(found) < least:
-            asked.fault(node.place, "empty", f"'{asked.what}' needs at least {least} of a list.")
+            asked.fault(node.place, "empty", f"An empty list stands at '{asked.what}'; expected one item at least.")
             return None
         return None if any(item is None for item in found) else tuple(found)
 
@@ -261,7 +269,7 @@ def named(reader: Reader) -> Reader:
         data: dict[str, Any] = {}
         places: dict[str, Place] = {}
         for key, value in node.pairs:
-            read = reader(value, Asked(key.text, asked.problems))
+            read = reader(value, Asked(key.text, asked.problems, key.place))
             if read is not None:
                 data[key.text] = read
                 places[key.text] = value.place

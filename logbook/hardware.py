@@ -52,7 +52,7 @@ class Stage:
     gain_range: tuple[float, float] | None = None
     response: Response | None = None
     oscillator: Oscillator | None = None
-    output: Literal["difference", "sum"] = "difference"
+    output: Literal["difference", "sum", ""] = "difference"
     part: str = ""
     note: str = ""
 
@@ -177,7 +177,8 @@ def _set_names(stage: Stage) -> list[str]:
     names = [name.replace("_", " ") for name in stage.parameters]
     names += ["gain range"] if stage.gain_range else []
     names += ["response"] if stage.response else []
-    return names + (["lo"] if stage.oscillator else [])
+    names += ["lo"] if stage.oscillator else []
+    return names + (["output"] if stage.output else [])
 
 
 def merge_stage(old: Stage, new: Stage) -> Stage:
@@ -199,6 +200,7 @@ def merge_stage(old: Stage, new: Stage) -> Stage:
         gain_range=new.gain_range or old.gain_range,
         response=new.response or (None if "gain" in new.parameters else old.response),
         oscillator=new.oscillator or old.oscillator,
+        output=new.output or old.output,
         part=new.part or old.part,
         note=new.note or old.note,
     )

@@ -35,9 +35,13 @@ class Values(Mapping[str, Any]):
     def __len__(self) -> int:
         return len(self._data)
 
-    def place(self, key: str) -> Place:
-        """Where the value of a key stands; the start of the mapping when the key is not there."""
-        return self._places.get(key, self.start)
+    def place(self, key: str, item: int | None = None) -> Place:
+        """Where the value of a key, or an item of its list, stands; the start of the mapping when the key is not there.
+
+        A single value that stands in place of a list is its own first item.
+        """
+        whole = self._places.get(key, self.start)
+        return whole if item is None else self._places.get(f"{key}.{item}", whole)
 
 
 @dataclass(frozen=True, slots=True)

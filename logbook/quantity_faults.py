@@ -14,6 +14,10 @@ _GROUPED = re.compile(r"(?<=[0-9])[\s_'](?=[0-9])")
 _WORD = re.compile(r"\s*[+-]?\.?(nan|inf|infinity)\b", re.IGNORECASE)
 
 
+# Keys that are no nouns: "an at is a frequency" is no sentence.
+_NO_NOUNS = frozenset({"at", "of", "reads", "drives"})
+
+
 class QuantityError(ValueError):
     """A text that is no quantity of the wanted dimension; `offset` counts characters from the text's start."""
 
@@ -35,6 +39,8 @@ def expected(wanted: tuple[str, ...], what: str) -> str:
     """`a gain is a ratio, such as '12 dB'`; without a noun, `here a ratio is expected, such as '12 dB'`."""
     nouns = " or ".join(DIMENSIONS[name].noun for name in wanted)
     example = DIMENSIONS[wanted[0]].example
+    if what in _NO_NOUNS:
+        return f"'{what}' takes {nouns}, such as '{example}'"
     if what:
         return f"{_article(what)} {what} is {nouns}, such as '{example}'"
     return f"here {nouns} is expected, such as '{example}'"
@@ -57,7 +63,9 @@ def unknown_unit(text: str, unit: str, wanted: tuple[str, ...], what: str, offse
     """A unit that is not in the table."""
     likely = likely_unit(unit, wanted)
     message = f"'{unit}' in '{text}' is no known unit; {expected(wanted, what)}."
-    hint = f"Did you mean '{likely}'? Upper and lower case differ." if likely else _units_here(wanted)
+    hint = f"Did you mean '{likely}'?" if likely else _units_here(wanted)
+    if likely and likely.lower() == unit.lower():
+        hint += " Upper and lower case differ."
     return QuantityError("unknown-unit", message, hint, offset)
 
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from math import log10
 from typing import Any
 
 from logbook.fields import Field, choice, either, mapping, pair, quantity, text
@@ -104,10 +105,12 @@ class StageMaker:
             gain_range=self._range(values),
             response=response,
             oscillator=_oscillator(values.get("lo")),
-            output=values.get("output", "difference"),
+            output=values.get("output", "difference" if name is None else ""),
             part=values.get("part", ""),
             note=values.get("note", ""),
         )
+        if name is None:
+            stage_possible(stage, values.place("nf"), self.problems)
         return stage if len(self.problems) == before else None
 
     def _parameters(self, values: Values, own: str) -> dict[str, Parameter]:
@@ -127,19 +130,17 @@ class StageMaker:
             if one in values and other in values:
                 message = f"Stage '{own}' gives both '{one}' and '{other}', which say the same thing."
                 self.problems.add(values.place(other), "given-twice", message, "Keep one of them.")
-        mixer_only = [key for key in ("nf_dsb", "image_rejection", "output") if key in values and "lo" not in values]
-        for key in mixer_only:
-            message = f"Stage '{own}' gives '{key}', which only a mixer has."
-            self.problems.add(values.place(key), "not-a-mixer", message, "A mixer is a stage with 'lo:'.")
 
     def _complete(self, values: Values, own: str) -> None:
+        for key in _MIXER_ONLY:
+            if key in values and "lo" not in values:
+                _not_a_mixer(own, key, values.place(key), self.problems)
         if not {"gain", "loss", "gain_range", "response"} & set(values):
             hint = "Give 'gain:', 'loss:', 'gain_range:' or 'response:'."
             self.problems.add(values.start, "missing-key", f"Stage '{own}' says nothing of its gain.", hint)
         if {"noise_current", "termination"} & set(values) and "noise_voltage" not in values:
             hint = "Add 'noise_voltage:', such as 1.5 nV/rtHz."
-            message = f"Stage '{own}' gives a noise current or termination without a noise voltage."
-            self.problems.add(values.start, "missing-key", message, hint)
+            self.problems.add(values.start, "missing-key", _NO_VOLTAGE.format(own), hint)
 
     def _range(self, values: Values) -> tuple[float, float] | None:
         found: Any = values.get("gain_range")
@@ -150,6 +151,45 @@ class StageMaker:
             message = f"The gain range runs from {found[0].written} down to {found[1].written}; the lower comes first."
             self.problems.add(values.place("gain_range"), "pair", message)
         return low, high
+
+
+_MIXER_ONLY = ("nf_dsb", "image_rejection", "output")
+_NO_VOLTAGE = "Stage '{}' gives a noise current or termination without a noise voltage."
+
+
+def _not_a_mixer(own: str, key: str, place: Place, problems: Problems) -> None:
+    message = f"Stage '{own}' gives '{key}', which only a mixer has."
+    problems.add(place, "not-a-mixer", message, "A mixer is a stage with 'lo:'.")
+
+
+def stage_sound(stage: Stage, place: Place, problems: Problems) -> bool:
+    """Whether a stage still makes sense after steps at `place` have set some of its parameters; a fault if not."""
+    before = len(problems)
+    if stage.oscillator is None:
+        for key in _MIXER_ONLY:
+            if key in stage.parameters or (key == "output" and stage.output == "sum"):
+                _not_a_mixer(stage.name, key, place, problems)
+    if {"noise_current", "termination"} & set(stage.parameters) and "noise_voltage" not in stage.parameters:
+        problems.add(place, "missing-key", _NO_VOLTAGE.format(stage.name), "Set 'noise_voltage:' as well.")
+    return stage_possible(stage, place, problems) and len(problems) == before
+
+
+def stage_possible(stage: Stage, place: Place, problems: Problems) -> bool:
+    """Whether a mixer's figure leaves it noise of its own beside what its image port lets in; a fault if not."""
+    figure, rejection = stage.value("nf"), stage.value("image_rejection")
+    if figure is None or rejection is None or stage.oscillator is None:
+        return True
+    least = 10 * log10(1 + 10 ** (-rejection / 10))
+    # Two figures that say the same may differ by rounding.
+    if figure >= least - 1e-9:
+        return True
+    message = (
+        f"Stage '{stage.name}' has nf {figure:g} dB and image_rejection {rejection:g} dB; "
+        f"the image alone makes {least:.2f} dB of it."
+    )
+    hint = "A single-sideband figure holds the image's noise; write 'nf_dsb:' for a double-sideband one."
+    problems.add(place, "nf-below-image", message, hint)
+    return False
 
 
 def _oscillator(found: Any) -> Oscillator | None:

@@ -95,6 +95,7 @@ class _Reader:
         self._column = indent + 1
         self._problems = problems
         self._what = what
+        self._article = what if what == "front matter" else f"a {what}"
         self._unusable = False
         self._restore = False
         self._next: Any = None
@@ -132,7 +133,7 @@ class _Reader:
         self._next()
         event = self._next()
         if type(event) is not StreamEndEvent:
-            message = f"A second document begins here; a {self._what} holds one."
+            message = f"A second document begins here; {self._article} holds one."
             self._fault(self._place(event.start_mark), "several-documents", message, "Take the line '---' out.")
         if type(node) is Scalar and not node.text:
             self._empty()
@@ -144,7 +145,7 @@ class _Reader:
             return self._scalar(event)
         place = self._place(event.start_mark)
         if sort is AliasEvent:
-            message = f"'*{event.anchor}' is an alias; a {self._what} does without."
+            message = f"'*{event.anchor}' is an alias; {self._article} does without."
             self._fault(place, "yaml-alias", message, "Write the value out, or quote a text that begins with '*'.")
             return Scalar("", place)
         if depth >= _DEEPEST:
@@ -194,7 +195,7 @@ class _Reader:
     def _is_merge_key(self, event: Any) -> bool:
         if type(event) is not ScalarEvent or event.style:
             return False
-        message = f"'<<' merges another mapping in; a {self._what} does without."
+        message = f"'<<' merges another mapping in; {self._article} does without."
         self._fault(self._place(event.start_mark), "merge-key", message, "Write the keys out.")
         self._skip(self._next())
         return True
@@ -234,10 +235,10 @@ class _Reader:
 
     def _refuse_extras(self, event: Any, place: Place) -> None:
         if event.anchor is not None:
-            message = f"'&{event.anchor}' is an anchor; a {self._what} does without."
+            message = f"'&{event.anchor}' is an anchor; {self._article} does without."
             self._problems.add(place, "yaml-anchor", message, "Take it out, or quote a text that begins with '&'.")
         if event.tag is not None:
-            message = f"A tag, '!', stands here; a {self._what} does without."
+            message = f"A tag, '!', stands here; {self._article} does without."
             self._problems.add(place, "yaml-tag", message, "Take it out, or quote a text that begins with '!'.")
 
     def _report_control(self, text: str, position: int) -> None:

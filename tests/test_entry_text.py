@@ -109,7 +109,7 @@ def test_a_fence_that_is_never_closed_runs_to_the_end() -> None:
     entry, problems = scanned("Text\n  ```yaml todo\n  a: 1\n\n  and on\n\n")
     assert entry.fences == (Fence("todo", "a: 1\n\nand on\n", 2, 3, 5, 2, False),)
     assert said(problems) == [(2, 3, "unclosed-fence")]
-    assert "'``` yaml todo' is not closed" in problems[0].message
+    assert "'```yaml todo' is not closed" in problems[0].message
 
 
 @pytest.mark.parametrize("next_fence", ["```yaml reading", "```python", '```yaml title="x"'])

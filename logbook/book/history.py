@@ -121,7 +121,7 @@ class _Maker:
     def _declare(self, block: Block) -> None:
         kind = self.kinds[block.kind]
         if kind.needs_revision and self.revision is None:
-            if self.entry.revision is None:
+            if self.entry.revision is None and "revision" not in self.entry.places:
                 message = f"A {kind.word} block speaks of a revision, and none is built up to {self.entry.date}."
                 self.problems.add(
                     block.place, "no-revision", message, "Add 'revision: A' to the front matter.", about="revision"

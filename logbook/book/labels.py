@@ -32,6 +32,9 @@ class Labels:
         return self._another(entry, known)
 
     def _unnamed(self, entry: Entry) -> Revision | None:
+        if "revision" in entry.places:
+            # A label is written and cannot be used: that is reported already, and nothing is missing.
+            return None
         making = next((block for block in entry.blocks if block.kind in MAKING), None)
         if making is not None:
             message = f"A {making.kind} block makes a revision, and this entry's front matter names none."

@@ -2,14 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from typing import Any
 
-from logbook.hardware import Chain, apply_steps
+from logbook.hardware import Chain, Step, apply_steps
 from logbook.kinds.change import Change
 from logbook.model import Block, Entry
-from logbook.problems import Problems
+from logbook.problems import Place, Problems
 from logbook.revision import Alternative, Made, Revision
+from logbook.stage_fields import stage_sound
 
 
 def make_chains(
@@ -57,7 +58,7 @@ def _change(change: Change, block: Block, revision: Revision, parent: Revision |
     revision.made[name] = Made(change.steps, change.why, False, change.as_planned, block.entry, block.line)
     before = parent.chains.get(name) if parent is not None else None
     if before is None:
-        if parent is None or not parent.broken:
+        if not revision.broken and (parent is None or not parent.broken):
             message = f"There is no chain '{name}' before this change."
             problems.add(change.values.place("chain"), "no-chain", message, "Write it as a chain block.", about=name)
         revision.chains.pop(name, None)
@@ -73,21 +74,21 @@ def _change(change: Change, block: Block, revision: Revision, parent: Revision |
             return
         steps = planned.steps
         revision.made[name] = Made(steps, change.why or planned.why, False, True, block.entry, block.line)
-    after = checked(apply_steps(before, steps, problems), problems)
+    after = checked(apply_steps(before, steps, problems), steps, change.values.start, problems)
     if after is None:
         revision.chains.pop(name, None)
         revision.broken.add(name)
         return
     revision.chains[name] = after
     for each in change.what_if:
-        chain = checked(apply_steps(before, each.steps, problems), problems)
+        chain = checked(apply_steps(before, each.steps, problems), each.steps, change.values.start, problems)
         if chain is not None:
             chains = {**(parent.chains if parent is not None else {}), name: chain}
             revision.alternatives.append(Alternative(each.name, name, chains, each.steps, each.cost, each.currency))
 
 
-def checked(chain: Chain | None, problems: Problems) -> Chain | None:
-    """The chain, if its lineup still holds after the steps and every gain is known."""
+def checked(chain: Chain | None, steps: Sequence[Step], place: Place, problems: Problems) -> Chain | None:
+    """The chain, if its lineup still holds after the steps, every gain is known and every stage makes sense."""
     if chain is None:
         return None
     names = chain.stage_names
@@ -98,12 +99,20 @@ def checked(chain: Chain | None, problems: Problems) -> Chain | None:
             message = f"Nothing says where in its range the gain of stage '{stage.name}' stands."
             problems.add(stage.place, "missing-key", message, "Give it a 'gain:'.")
             return None
+        if not stage_sound(stage, _last_step(stage.name, steps, place), problems):
+            return None
     if lineup is None:
         return chain
     lost = [name for name in (lineup.adjust, lineup.at) if name not in names]
     if lost or names.index(lineup.adjust) >= names.index(lineup.at):
         what = f"stage '{lost[0]}' is gone" if lost else f"'{lineup.adjust}' no longer stands ahead of '{lineup.at}'"
-        message = f"The lineup of chain '{chain.name}' cannot be kept by later changes: {what}."
-        problems.add(lineup.place, "lineup", message, "Write the chain in full in the changed revision.")
+        message = f"The lineup of chain '{chain.name}' cannot be kept by these steps: {what}."
+        at = _last_step(lost[0] if lost else lineup.adjust, steps, place)
+        problems.add(at, "lineup", message, "Write the changed chain in full, as a chain block.")
         return None
     return chain
+
+
+def _last_step(name: str, steps: Sequence[Step], place: Place) -> Place:
+    """Where the last step stands that touches a stage; `place` where none does."""
+    return next((step.place for step in reversed(steps) if step.name == name), place)

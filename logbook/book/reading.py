@@ -71,8 +71,9 @@ def _front(written: EntryText, problems: Problems) -> YamlMapping | None:
 
 
 def _date_missing(written: EntryText, problems: Problems) -> None:
-    """Blocks count only in an entry, and an entry has a date."""
-    if written.fences:
+    """Blocks count only in an entry, and an entry has a date; front matter that was not found is reported already."""
+    said = any(problem.code == "front-matter" for problem in problems.within(written.path, 1, len(written.lines)))
+    if written.fences and not said:
         place = Place(written.path, written.fences[0].line)
         message = "This file holds blocks and its front matter gives no date, so they are not computed."
         hint = "Begin the file with '---', 'title: ...', 'date: 2026-05-09', '---'."
@@ -142,7 +143,8 @@ def _block(path: str, number: int, fence: Fence, kinds: Mapping[str, Kind], prob
 
 
 def _items(node: Node, kind: Kind, problems: Problems) -> tuple[Values, ...]:
-    asked = Asked(f"a {kind.word} block", problems)
+    article = "an" if kind.word[0] in "aeio" else "a"
+    asked = Asked(f"{article} {kind.word} block", problems)
     if isinstance(node, Sequence) and kind.many:
         read = [read_mapping(item, kind.fields, asked) for item in node.items]
     elif isinstance(node, Sequence):

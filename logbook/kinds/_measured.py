@@ -78,13 +78,15 @@ def _through_known(values: Values, bench: Bench | None, session: Session) -> boo
         message = "'through' names parts of a bench's path, and no bench is named."
         session.fault(values.place("through"), "unknown-bench", message, "Add 'bench:'.")
         return False
-    unknown = [name for name in names if bench is not None and bench.part(name) is None]
-    for name in unknown:
-        assert bench is not None
+    sound = True
+    for number, name in enumerate(names):
+        if bench is None or bench.part(name) is not None:
+            continue
+        sound = False
         message = f"'{name}' is no part of the path of bench '{bench.name}'."
         hint = did_you_mean(name, [part.name for part in bench.path])
-        session.fault(values.place("through"), "unknown-part", message, hint)
-    return not unknown
+        session.fault(values.place("through", number), "unknown-part", message, hint)
+    return sound
 
 
 def measured(
@@ -98,7 +100,7 @@ def measured(
         return None
     shown = Shown(read.value, read.u, f"{place.file}:{place.line}", quantity, setting.conditions)
     equal = on_equal_terms(shown, known, bench)
-    if not bears(read.value, equal.value, known, setting.conditions, bench, values, session):
+    if not bears(read.value, equal.value, known, setting.conditions, bench, place, session):
         return None
     return Result(
         quantity=quantity,
@@ -228,7 +230,7 @@ def bears(
     known: KnownQuantity | None,
     conditions: Conditions,
     bench: Bench | None,
-    values: Values,
+    place: Place,
     session: Session,
 ) -> bool:
     """Whether the instrument and the path bear the level that was read; a fault with a caution when they do not."""
@@ -246,7 +248,8 @@ def bears(
         (n, found, most) for n, found, most in steps if most is not None and found > most
     ]
     for name, found, most in over:
-        message = f"{name} would get {show_value(found, 'dBm')}; it bears {show_value(most, 'dBm')} at most."
+        would, bears_most = show_value(found, "dBm"), show_value(most, "dBm")
+        message = f"With this reading {name} would get {would}; it bears {bears_most} at most."
         hint = "Caution: switch off, and put more loss ahead of it before you read again."
-        session.fault(values.start, "overload", message, hint)
+        session.fault(place, "overload", message, hint)
     return not over

@@ -34,7 +34,7 @@ def declare(values: Values, session: Session) -> Accept | None:
         why=values["why"],
         entry=session.entry.path,
         revision=session.label,
-        place=values.start,
+        place=values.place("quantity"),
     )
 
 

@@ -10,6 +10,7 @@ from logbook.hardware import Chain, Step
 from logbook.kind import Kind, Session
 from logbook.kinds._response import read_response
 from logbook.model import PLANNED, Values
+from logbook.problems import did_you_mean
 from logbook.showing.chains import show_change
 from logbook.stage_fields import PARAMETER_FIELDS, STAGE_FIELDS, StageMaker
 from logbook.yaml_nodes import Mapping, Node
@@ -27,10 +28,21 @@ def _step(node: Node, asked: Asked) -> Values | None:
     keys = [key.text for key, _ in node.pairs] if isinstance(node, Mapping) else []
     actions = [key for key in keys if key in _ACTIONS]
     if len(actions) != 1:
-        message = "A step does one thing: it begins with insert, replace, set or remove."
-        asked.fault(node.place, "step", message, "Such as '- remove: pad'.")
+        _no_step(node, keys, actions, asked)
         return None
     return read_mapping(node, _ACTIONS[actions[0]], Asked(f"step '{actions[0]}'", asked.problems))
+
+
+def _no_step(node: Node, keys: list[str], actions: list[str], asked: Asked) -> None:
+    hint = did_you_mean(keys[0], _ACTIONS) if keys else ""
+    if actions:
+        written = "'" + "' and '".join(actions) + "' stand in one step"
+    else:
+        written = f"'{keys[0]}' begins no step" if keys else "This is no step"
+    message = f"{written}; a step does one thing: insert, replace, set or remove."
+    asked.fault(
+        node.place, "step", message, hint if hint.startswith("Did") and not actions else "Such as '- remove: pad'."
+    )
 
 
 STEPS = Field("steps", many(_step))

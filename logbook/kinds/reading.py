@@ -23,6 +23,9 @@ AVERAGING = ("power", "log", "voltage", "peak")
 _ANY = tuple(name for name in DIMENSIONS if name not in ("noise_temperature", "temperature_difference"))
 
 
+_BETTER = f"It says which way is better: {', '.join(BETTER)}."
+
+
 @dataclass(frozen=True, slots=True)
 class Given:
     """One result as written: its value, and the direction where the user states it."""
@@ -45,11 +48,16 @@ def _result(node: Node, asked: Asked) -> Given | None:
         if known is None:
             hint = did_you_mean(asked.what, KNOWN)
             hint = hint if hint.startswith("Did") else "A name of your own is written {value: 3.1 V, better: higher}."
-            asked.fault(node.place, "unknown-quantity", f"'{asked.what}' is no quantity known by name.", hint)
+            asked.fault(
+                asked.key_place or node.place, "unknown-quantity", f"'{asked.what}' is no quantity known by name.", hint
+            )
             return None
         found = value(node, asked)
         return None if found is None else Given(found, None)
-    fields = (Field("value", value, required=True), Field("better", choice(*BETTER), required=known is None))
+    fields = (
+        Field("value", value, required=True),
+        Field("better", choice(*BETTER), required=known is None, help=_BETTER),
+    )
     values = read_mapping(node, fields, Asked(f"'{asked.what}'", asked.problems))
     return None if values is None else Given(values["value"], values.get("better"))
 

@@ -79,12 +79,17 @@ def _limits(
         return None
     try:
         if found["sign"]:
+            offset = found.start("one")
             one = read_quantity(found["one"], dimension, "limit")
             low, high = (None, one.value) if found["sign"] in ("<=", "≤") else (one.value, None)
             return low, high, one.unit
-        first, last = (read_quantity(found[side], dimension, "limit") for side in ("low", "high"))
+        offset = found.start("low")
+        first = read_quantity(found["low"], dimension, "limit")
+        offset = found.start("high")
+        last = read_quantity(found["high"], dimension, "limit")
     except QuantityError as error:
-        session.fault(place, error.code, error.message, error.hint)
+        there = Place(place.file, place.line, place.column + offset + error.offset)
+        session.fault(there, error.code, error.message, error.hint)
         return None
     if first.value > last.value or first.unit != last.unit:
         session.fault(place, "limit", f"'{written}' runs from high to low; the lower limit comes first.")

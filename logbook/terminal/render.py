@@ -34,7 +34,7 @@ from logbook.terminal.tables import table_lines
 _TONES = {"plain": "Note", "good": "In order", "caution": "Caution", "problem": "Attention"}
 _UNICODE = Signs("─", "→", "•")
 _ASCII = Signs("-", "->", "*")
-_PLAIN = {
+_PLAIN: dict[str, str | int | None] = {
     "±": "+/-", "µ": "u", "μ": "u", "Ω": "ohm", "√": "rt", "°": "deg", "–": "-", "—": "-", "“": '"', "”": '"',
     "’": "'", "‘": "'", "…": "...", "×": "x", "·": "*", "θ": "theta", "≤": "<=", "≥": ">=", "→": "->", "−": "-",
     "\xa0": " ", "\u202f": " ", "\u2009": " ",

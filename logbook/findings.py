@@ -183,6 +183,26 @@ class Accept:
 
 
 @dataclass(frozen=True, slots=True)
+class Part:
+    """An item that was bought for a revision, or is planned to be; `price` of one, in its currency."""
+
+    item: str
+    count: int
+    price: float
+    currency: str
+    chain: str
+    revision: str
+    planned: bool
+    entry: str
+    place: Place
+
+    @property
+    def cost(self) -> float:
+        """Price of one times how many."""
+        return self.count * self.price
+
+
+@dataclass(frozen=True, slots=True)
 class Todo:
     """An open item: where it was opened, and closed."""
 
@@ -210,6 +230,7 @@ class Findings:
     targets: list[TargetVerdict] = field(default_factory=list)
     regressions: list[Regression] = field(default_factory=list)
     todo: list[Todo] = field(default_factory=list)
+    parts: list[Part] = field(default_factory=list)
     spreads: list[Spread] = field(default_factory=list)
 
     def deltas_to(self, revision: str, *, basis: str | None = None) -> list[Delta]:

@@ -28,7 +28,7 @@ def compare_all(
     own: dict[str, dict[str, list[Result]]] = {}
     for label in history.revisions:
         own[label] = by_key(r for r in measured if r.revision == label)
-    findings = Findings(todo=_todo(history, problems))
+    findings = Findings(todo=_todo(history, problems), parts=history.parts)
     for label, revision in history.revisions.items():
         findings.deltas += deltas_of(revision, history, own, predict, rules)
         findings.spreads += spreads(own[label], rules)

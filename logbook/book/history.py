@@ -9,7 +9,7 @@ from typing import Any
 from logbook.bench import Bench
 from logbook.book.labels import Labels
 from logbook.book.making import make_chains
-from logbook.findings import Accept, Target, TodoWords
+from logbook.findings import Accept, Part, Target, TodoWords
 from logbook.hardware import Chain
 from logbook.kind import Kind, ReadFile, Session
 from logbook.model import Block, Entry
@@ -30,6 +30,7 @@ class History:
     targets: dict[str, Target] = field(default_factory=dict)
     accepts: list[Accept] = field(default_factory=list)
     todo: list[tuple[Entry, TodoWords]] = field(default_factory=list)
+    parts: list[Part] = field(default_factory=list)
     declared: dict[BlockKey, list[Any]] = field(default_factory=dict)
 
     def ancestors(self, label: str) -> list[Revision]:
@@ -143,6 +144,8 @@ class _Maker:
             self.history.targets[found.key] = found
         elif isinstance(found, Accept):
             self.history.accepts.append(found)
+        elif isinstance(found, Part):
+            self.history.parts.append(found)
         elif isinstance(found, TodoWords):
             self.history.todo.append((self.entry, found))
 

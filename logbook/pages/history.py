@@ -37,7 +37,9 @@ def _branches(book: Book, parent: str | None) -> tuple[Branch, ...]:
         if revision.comes_from == parent or (parent is None and revision.comes_from not in known):
             line = (revision_link(label), f" {revision.date}", _why(book, label))
             state = f", {revision.state}" if not revision.built else ""
-            found.append(Branch((*line[:2], state, line[2]), _branches(book, label), not revision.built))
+            found.append(
+                Branch((*line[:2], state, line[2]), _branches(book, label), not revision.built, revision.state)
+            )
     return tuple(found)
 
 

@@ -11,6 +11,7 @@ from logbook.model import Entry
 from logbook.pages.benches import bench_pieces
 from logbook.pages.history import history_pieces
 from logbook.pages.links import entry_link
+from logbook.pages.parts import part_pieces
 from logbook.pages.revision import revision_pieces
 from logbook.pieces import Heading, Items, Line, Muted, Note, Page, Piece, Span, Table
 from logbook.showing.targets import target_verdict_line, target_words
@@ -36,6 +37,7 @@ def generated_pages(book: Book) -> list[Page]:
     pages.append(Page("targets.md", "Targets", tuple(target_pieces(book))))
     pages.append(Page("open-items.md", "Open items", tuple(todo_pieces(book))))
     pages.append(Page("benches.md", "Benches", tuple(bench_pieces(book))))
+    pages.append(Page("parts.md", "Parts", tuple(part_pieces(book))))
     return pages
 
 

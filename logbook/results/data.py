@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import Any
 
 from logbook.book import Book
-from logbook.findings import Agreement, BudgetRow, Delta, Regression, Spread, TargetVerdict, Todo
+from logbook.findings import Agreement, BudgetRow, Delta, Part, Regression, Spread, TargetVerdict, Todo
 from logbook.model import MEASURED, PREDICTED, Result
 from logbook.problems import Problem
 from logbook.results.hardware import revision_data
@@ -39,6 +39,7 @@ def results_data(book: Book) -> dict[str, Any]:
         "regressions": [_regression(found) for found in findings.regressions],
         "spreads": [_spread(found) for found in findings.spreads],
         "todo": [_todo(item) for item in findings.todo],
+        "parts": [_part(part) for part in findings.parts],
         "problems": [_problem(problem) for problem in book.problems],
     }
 
@@ -200,6 +201,21 @@ def _spread(found: Spread) -> dict[str, Any]:
 
 def _todo(item: Todo) -> dict[str, Any]:
     return {"id": item.id, "what": item.what, "opened": item.opened, "closed": item.closed}
+
+
+def _part(part: Part) -> dict[str, Any]:
+    return {
+        "item": part.item,
+        "quantity": part.count,
+        "price": number(part.price),
+        "cost": number(part.cost),
+        "currency": part.currency,
+        "chain": word(part.chain),
+        "revision": part.revision,
+        "planned": bool(part.planned),
+        "entry": part.entry,
+        "line": part.place.line,
+    }
 
 
 def _problem(problem: Problem) -> dict[str, Any]:

@@ -199,11 +199,12 @@ class Diagram:
 
 @dataclass(frozen=True, slots=True)
 class Branch:
-    """A node of a tree with what grows from it; `side` marks a trial or a plan."""
+    """A node of a tree with what grows from it; `side` marks a trial or a plan, `state` says which."""
 
     line: Line
     children: tuple[Branch, ...] = ()
     side: bool = False
+    state: str = ""
 
 
 @dataclass(frozen=True, slots=True)

@@ -40,7 +40,10 @@ def diagram_html(diagram: Diagram, context: Context) -> str:
 def _port(way: str, words: str) -> str:
     if not words:
         return ""
-    return element("li", element("span", way, "lb-way") + " " + element("span", text(words), "lb-fact"), "lb-port")
+    # A number stays on one line with its unit.
+    fact = element("span", text(words.replace(" ", "\u00a0").replace(",\u00a0", ", ")), "lb-fact")
+    wired = element("span", symbol_html(way), "lb-wire")
+    return element("li", wired + element("span", way, "lb-way") + " " + fact, "lb-port")
 
 
 def _box(box: Box) -> str:

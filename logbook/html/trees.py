@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from logbook.html.context import Context
-from logbook.html.elements import element
+from logbook.html.elements import class_word, element
 from logbook.html.lines import line_html
 from logbook.pieces import Branch, Tree
 
@@ -19,8 +19,9 @@ def _list(start: Branch, context: Context, classes: str) -> str:
     while here is not None:
         onward = main_child(here)
         off = "".join("\n" + _list(child, context, "lb-twig") for child in here.children if child is not onward)
-        mark = " " + element("span", "side branch", "lb-mark") if here.side else ""
-        items.append(element("li", line_html(here.line, context.url) + mark + off, "lb-side" if here.side else ""))
+        mark = " " + element("span", "side branch", "lb-mark") if here.side and not here.state else ""
+        side = f"lb-side {class_word(here.state)}" if here.side else ""
+        items.append(element("li", line_html(here.line, context.url) + mark + off, side))
         here = onward
     return element("ul", "\n".join(items), classes)
 

@@ -47,6 +47,18 @@ def display_move(
     return display
 
 
+def tuning_move(orders: Orders, sources_hz: Array, follows: Array, target_follows: Array, delta_hz: float) -> Array:
+    """How far a spur moves in the pass-band, as its tone does, when the unit is tuned by delta; Hz, no sign, [c].
+
+    |s sum n_j follows_j - target_follows| |delta|, with s the sign of sum n f: a true signal moves by delta, what meets
+    the n-th harmonic of the oscillator by n delta. Source: closed form, derivative of f = |sum n_i f_i|.
+    """
+    sense = np.sign(orders @ np.asarray(sources_hz, dtype=np.float64))
+    rate = sense * (orders @ np.asarray(follows, dtype=np.float64)) - np.asarray(target_follows, dtype=np.float64)
+    move: Array = np.abs(rate * delta_hz)
+    return move
+
+
 def predicted_drop(orders: Orders, source: int, drop_db: float) -> Array:
     """|n_i| d: dB by which each product falls when one source's level falls by d dB, [c]; a source of order 0: none.
 

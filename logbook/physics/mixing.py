@@ -16,6 +16,7 @@ import numpy.typing as npt
 from logbook.physics.constants import Array
 
 Orders = npt.NDArray[np.int64]
+Band = tuple[float, float]
 
 
 class Hits(NamedTuple):
@@ -30,12 +31,12 @@ class Hits(NamedTuple):
     offset_hz: Array
 
 
-class Crossings(NamedTuple):
-    """Products that fall into a band on a tuning grid: indices of grid point and product, offset (Hz); [h]."""
+class Ranges(NamedTuple):
+    """Products that fall into a band somewhere in a tuning range: their indices, from where to where (Hz); [r]."""
 
-    point: Orders
     product: Orders
-    offset_hz: Array
+    low_hz: Array
+    high_hz: Array
 
 
 @lru_cache(maxsize=32)
@@ -97,7 +98,7 @@ def without(orders: Orders, wanted: tuple[int, ...]) -> Orders:
 def landing(orders: Orders, sources_hz: Array, targets_hz: Array, half_width_hz: Array) -> Hits:
     """Products within half_width of a target, bounds included: Hz, sources [s], targets and half widths [t].
 
-    half_width is IF bandwidth/2 + tolerance. Source: definition.
+    half_width is IF bandwidth/2 + tolerance; where it differs by product, [products, t]. Source: definition.
     """
     frequencies = product_frequencies(orders, sources_hz)
     targets = np.atleast_1d(np.asarray(targets_hz, dtype=np.float64))
@@ -109,33 +110,33 @@ def landing(orders: Orders, sources_hz: Array, targets_hz: Array, half_width_hz:
     return Hits(which, target, frequencies[which], offset[ranked])
 
 
-def crossings(orders: Orders, sources_hz: Array, target_hz: Array, half_width_hz: float) -> Crossings:
-    """Where on a tuning grid products fall into an IF: sources [points, s], target [points] or one, Hz.
+def crossing_ranges(
+    at_zero_hz: Array, per_hz: Array, target_at_zero_hz: float, target_per_hz: float, half_width_hz: Array, tune: Band
+) -> Ranges:
+    """Where in a tuning range products |a + b t| lie within half_width of a target c + d t, to the hertz; [r].
 
-    Sorted by point, then product, which is lowest order first. Done in slices, so that memory stays small.
-    Source: definition.
+    a at_zero_hz (Hz) and b per_hz (1) [products]; half_width_hz (Hz) one or [products]; tune: lowest and highest
+    tuning t (Hz). Sorted by where they begin. No grid: |a + b t| - (c + d t) is linear on either side of zero, so that
+    its bounds are solved for. Source: closed form.
     """
-    points = np.asarray(sources_hz, dtype=np.float64)
-    targets = np.broadcast_to(np.asarray(target_hz, dtype=np.float64), points.shape[:1])
-    slice_length = max(1, 1_000_000 // max(1, len(orders)))
-    found: list[tuple[Orders, Orders, Array]] = []
-    for start in range(0, len(points), slice_length):
-        stop = start + slice_length
-        offset = product_frequencies(orders, points[start:stop]) - targets[start:stop, np.newaxis]
-        point, which = np.nonzero(np.abs(offset) <= half_width_hz)
-        found.append((point + start, which, offset[point, which]))
-    if not found:
-        nothing = np.zeros(0, dtype=np.int64)
-        return Crossings(nothing, nothing, np.zeros(0))
-    return Crossings(*(np.concatenate(column) for column in zip(*found, strict=True)))
-
-
-def lowest_order(orders: Orders, crossed: Crossings, points: int) -> Orders:
-    """Lowest order that falls into the band at each grid point, [points]; 0 where none does. Source: definition."""
-    lowest = np.full(points, np.iinfo(np.int64).max, dtype=np.int64)
-    np.minimum.at(lowest, crossed.point, product_order(orders)[crossed.product])
-    lowest[lowest == np.iinfo(np.int64).max] = 0
-    return lowest
+    low, high = tune
+    found: list[tuple[Orders, Array, Array]] = []
+    for sense in (1.0, -1.0):
+        offset = sense * np.asarray(at_zero_hz, dtype=np.float64) - target_at_zero_hz
+        slope = sense * np.asarray(per_hz, dtype=np.float64) - target_per_hz
+        with np.errstate(divide="ignore", invalid="ignore"):
+            ends = np.stack([(half - offset) / slope for half in (-half_width_hz, half_width_hz)])
+        always = np.where(np.abs(offset) <= half_width_hz, low, np.inf)
+        first = np.maximum(np.where(slope == 0.0, always, ends.min(axis=0)), low)
+        last = np.minimum(np.where(slope == 0.0, high, ends.max(axis=0)), high)
+        # Beyond the zero of a product the other sense holds.
+        middle = np.where(first <= last, 0.5 * (first + last), 0.0)
+        inside = (first <= last) & (sense * (at_zero_hz + per_hz * middle) >= 0.0)
+        which = np.flatnonzero(inside)
+        found.append((which, first[which], last[which]))
+    product, begin, end = (np.concatenate(column) for column in zip(*found, strict=True))
+    ranked = np.lexsort((product, begin))
+    return Ranges(product[ranked], begin[ranked], end[ranked])
 
 
 def converted(frequency_hz: float, lo_hz: float, output: str = "difference") -> float:

@@ -81,27 +81,36 @@ def test_the_wanted_conversion_is_left_out() -> None:
     assert (1, -1) not in {tuple(row) for row in kept.tolist()}
 
 
-@pytest.mark.parametrize("points", [1, 37, 400])
-def test_crossings_of_a_tuning_range_against_one_point_at_a_time(points: int) -> None:
-    tuned = np.linspace(50.0, 54.0, points) * MHZ
-    sources = np.stack([tuned, tuned + 21.4 * MHZ, np.full(points, 10 * MHZ)], axis=-1)
-    rows = mixing.without(mixing.product_orders(3, 11), (1, -1, 0))
-    crossed = mixing.crossings(rows, sources, np.array(21.4 * MHZ), 7.5e3)
-    expected = []
-    for i in range(points):
-        hits = mixing.landing(rows, sources[i], np.array([21.4 * MHZ]), np.array([7.5e3]))
-        expected += [(i, p) for p in sorted(hits.product.tolist())]
-    assert list(zip(crossed.point.tolist(), crossed.product.tolist(), strict=True)) == expected
-    lowest = mixing.lowest_order(rows, crossed, points)
-    for i in range(points):
-        orders = [int(mixing.product_order(rows)[p]) for j, p in expected if j == i]
-        assert lowest[i] == min(orders, default=0)
+@pytest.mark.parametrize(("sense", "first_if"), [(1.0, 21.4), (1.0, -10.7), (-1.0, 71.5)])
+def test_crossings_of_a_tuning_range_against_a_grid(sense: float, first_if: float) -> None:
+    """Every product at each of 4001 tunings, 1 kHz apart: the stretches are where the grid says, to its step."""
+    tuned = np.linspace(50.0, 54.0, 4001) * MHZ
+    rows = mixing.product_orders(3, 8)
+    sources = np.stack([tuned, sense * tuned + first_if * MHZ, np.full(len(tuned), 10.003 * MHZ)], axis=-1)
+    target, half = abs(first_if) * MHZ, 7.4e3
+    at_zero, per = rows @ np.array([0.0, first_if, 10.003]) * MHZ, rows @ np.array([1.0, sense, 0.0])
+    found = mixing.crossing_ranges(at_zero, per, target, 0.0, np.float64(half), (50.0 * MHZ, 54.0 * MHZ))
+    inside = np.abs(np.abs(sources @ rows.T) - target) <= half
+    told = np.zeros_like(inside)
+    for which, low, high in zip(found.product, found.low_hz, found.high_hz, strict=True):
+        told[:, which] |= (tuned >= low - 1e-3) & (tuned <= high + 1e-3)
+    assert inside.any()
+    assert np.array_equal(told, inside)
+    assert np.all(np.diff(found.low_hz) >= 0)
 
 
-def test_an_empty_tuning_range_has_no_crossings() -> None:
-    crossed = mixing.crossings(mixing.product_orders(2, 3), np.zeros((0, 2)), np.array(1.0), 1.0)
-    assert crossed.point.size == 0
-    assert mixing.lowest_order(mixing.product_orders(2, 3), crossed, 0).size == 0
+def test_crossings_of_a_target_that_follows_the_tuning() -> None:
+    """Harmonics of a 10 MHz clock on the signal frequency itself, 3 kHz to either side."""
+    rows = mixing.product_orders(1, 6, (1,))
+    found = mixing.crossing_ranges(rows[:, 0] * 10e6, np.zeros(6), 0.0, 1.0, np.full(6, 3e3), (18e6, 40e6))
+    assert rows[found.product, 0].tolist() == [2, 3, 4]
+    assert found.low_hz == pytest.approx([20e6 - 3e3, 30e6 - 3e3, 40e6 - 3e3])
+    assert found.high_hz == pytest.approx([20e6 + 3e3, 30e6 + 3e3, 40e6])
+
+
+def test_a_product_that_stays_in_the_band_takes_the_whole_range() -> None:
+    found = mixing.crossing_ranges(np.array([21.4e6, 21.5e6]), np.zeros(2), 21.4e6, 0.0, np.float64(5e3), (50e6, 52e6))
+    assert [(int(p), lo, hi) for p, lo, hi in zip(*found, strict=True)] == [(0, 50e6, 52e6)]
 
 
 @pytest.mark.parametrize(("lo", "half_if"), [(800.0, 850.0), (1000.0, 950.0)])

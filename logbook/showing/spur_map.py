@@ -1,0 +1,142 @@
+"""A plan for a tuning range as pieces: the choices in their rank, and a map of what falls where."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from logbook.physics.mixing import Band
+from logbook.pieces import Axis, Chart, Folded, Line, Mark, Note, Picture, Piece, Role, Series, Strong, Table
+from logbook.quantity_display import show_frequency
+from logbook.showing.words import percent
+from logbook.spurs.planning import Asked, Choice, Crossing
+from logbook.spurs.setting import SIGNAL
+
+# Of a busy map the lowest orders are named; of a long table the rest stands folded beneath.
+_MARKS = 5
+_ROWS = 20
+_MORE = 400
+# A stretch wider than this part of the range is drawn as a line and not as a point.
+_WIDE = 1 / 150
+
+
+@dataclass(frozen=True, slots=True)
+class Plan:
+    """What was asked, and the choices in their rank."""
+
+    asked: Asked
+    choices: tuple[Choice, ...]
+
+
+def plan_pieces(plan: Plan) -> list[Piece]:
+    """The ranking, then the map of the best choice, then those of the others."""
+    usable = [each for each in plan.choices if not each.why]
+    pieces: list[Piece] = [_ranking(plan)]
+    if not usable:
+        return [*pieces, Note("No choice can be used: each IF lies inside the tuning range.", "caution")]
+    if len(usable) > 1:
+        pieces.append(Note((Strong(f"Fewest low-order products: {usable[0].name}. "), _why_best(usable))))
+    pieces += _map(usable[0], plan)
+    for each in usable[1:]:
+        pieces.append(Folded(f"IF {each.name}: {_count(each)}", tuple(_map(each, plan))))
+    return pieces
+
+
+def _why_best(usable: Sequence[Choice]) -> str:
+    best, second = usable[0], usable[1]
+    most = max([1, *(c.order for each in (best, second) for c in each.crossings)])
+    for order, (one, other) in enumerate(zip(best.counts(most), second.counts(most), strict=True), start=1):
+        if one != other:
+            return f"At order {order} it has {one}; the next best, {second.name}, has {other}."
+    return f"It has as many of each order as {second.name}, over a smaller part of the range."
+
+
+def _count(choice: Choice) -> str:
+    count = len(choice.crossings)
+    return "no product" if not count else "one product" if count == 1 else f"{count} products"
+
+
+def _ranking(plan: Plan) -> Table:
+    low, high = plan.asked.tune
+    rows: list[tuple[Line, ...]] = []
+    for each in plan.choices:
+        lowest = str(each.crossings[0].order) if each.crossings else ""
+        told = [_by_order(each), lowest, percent(each.affected)]
+        if each.why:
+            told = [f"not usable: {each.why}", "", ""]
+        rows.append((each.name, _band(each.lo), *told, _band(each.image), _band(each.half_if)))
+    head = ("IF", "oscillator", "products", "lowest order", "of the range", "image", "half-IF")
+    caption = f"Choices for {_band((low, high))}, products up to order {plan.asked.order}, fewest of low order first"
+    return Table(head, tuple(rows), caption, frozenset({3, 4}))
+
+
+def _by_order(choice: Choice) -> str:
+    """`5: 1 of order 3, 4 of order 6`."""
+    if not choice.crossings:
+        return "none"
+    orders = sorted({each.order for each in choice.crossings})
+    counts = choice.counts(max(orders))
+    listed = ", ".join(f"{counts[order - 1]} of order {order}" for order in orders[:3])
+    return f"{len(choice.crossings)}: {listed}{' ...' if len(orders) > 3 else ''}"
+
+
+def _band(band: Band) -> str:
+    low, high = (show_frequency(round(each, 1)) for each in band)
+    return low if low == high else f"{low} to {high}"
+
+
+def _map(choice: Choice, plan: Plan) -> list[Piece]:
+    if not choice.crossings:
+        return [Note(f"IF {choice.name}: no product up to order {plan.asked.order} falls into it.", "good")]
+    caption = f"What falls where with IF {choice.name}"
+    shown, rest = choice.crossings[:_ROWS], choice.crossings[_ROWS:_MORE]
+    pieces: list[Piece] = [
+        Picture(
+            title=f"Products over the tuning range, IF {choice.name}",
+            drawing=_chart(choice, plan),
+            alt=_alt(choice, plan),
+            numbers=_table(shown, caption),
+        )
+    ]
+    if rest:
+        left = len(choice.crossings) - len(shown)
+        said = (
+            f"{left} more" if left == len(rest) else f"{left} more, of which these {len(rest)} are of the lowest order"
+        )
+        pieces.append(Folded(said, (_table(rest, f"{caption}, continued"),)))
+    return pieces
+
+
+def _alt(choice: Choice, plan: Plan) -> str:
+    first = choice.crossings[0]
+    where = f"the first is {first.words}, of order {first.order}, at {_band((first.low_hz, first.high_hz))}"
+    return f"{_count(choice)} between {_band(plan.asked.tune)}; {where}.".capitalize()
+
+
+def _table(found: Sequence[Crossing], caption: str) -> Table:
+    rows: list[tuple[Line, ...]] = []
+    for each in found:
+        lands = "the signal frequency" if each.spot == SIGNAL else "the IF"
+        rows.append((_band((each.low_hz, each.high_hz)), each.words, str(each.order), lands, each.response))
+    return Table(("tuned to", "product", "order", "falls onto", "what it is"), tuple(rows), caption, frozenset({2}))
+
+
+def _chart(choice: Choice, plan: Plan) -> Chart:
+    low, high = plan.asked.tune
+    wide = _WIDE * (high - low)
+    series: list[Series] = []
+    sorts: tuple[tuple[str, str, Role], ...] = (("IF", "into the IF", "now"), (SIGNAL, "onto the signal", "other"))
+    for spot, words, role in sorts:
+        there = [each for each in choice.crossings if each.spot == spot]
+        narrow = [each for each in there if each.high_hz - each.low_hz <= wide]
+        if narrow:
+            x, y = [each.middle_hz / 1e6 for each in narrow], [float(each.order) for each in narrow]
+            series.append(Series(words, x, y, role, line=False, marker=True))
+        stretches = [each for each in there if each not in narrow]
+        if stretches:
+            # nan lifts the pen between two stretches.
+            x = [hz / 1e6 for each in stretches for hz in (each.low_hz, each.high_hz, float("nan"))]
+            y = [order for each in stretches for order in (float(each.order), float(each.order), float("nan"))]
+            series.append(Series(f"{words}, over a stretch", x, y, role))
+    marks = tuple(Mark(each.middle_hz / 1e6, float(each.order), each.words) for each in choice.crossings[:_MARKS])
+    return Chart(Axis("tuned to, MHz"), Axis("order of the product"), tuple(series), marks=marks)

@@ -121,6 +121,14 @@ def test_a_table_names_its_rows_and_columns_and_sets_numbers_apart() -> None:
     assert [tr.get("id") for tr in root.iter("tr")] == [None, "gain", None]
 
 
+def test_words_among_figures_may_wrap_and_figures_may_not() -> None:
+    table = Table(
+        ("total", "predicted"), (("gain", "18.0 dB"), ("IIP2", "not known: no stage gives one")), "", frozenset({1})
+    )
+    classes = [td.get("class", "").split() for td in page(table).iter("td")]
+    assert classes == [["lb-number"], ["lb-number", "lb-words"]]
+
+
 def test_a_wide_table_scrolls_by_itself_and_the_keyboard_reaches_it() -> None:
     region = page(Table(("a", "b"), ()))[0]
     assert (region.get("role"), region.get("tabindex"), region.get("aria-label")) == ("region", "0", "Table of a, b")
@@ -167,6 +175,11 @@ def test_a_tree_sets_in_only_what_branches_off() -> None:
     assert [words(li).split()[0] for li in trunk] == ["A", "B", "C", "D"]
     assert words(trunk[0]) == "A T side branch"
     assert words(trunk[2]) == "C E side branch"
+
+
+def test_a_trial_and_a_plan_have_each_their_own_look() -> None:
+    root = page(Tree((Branch("A", (Branch("T", side=True, state="trial"), Branch("P", side=True, state="planned"))),)))
+    assert [li.get("class") for li in root.iter("li")] == [None, "lb-side lb-trial", "lb-side lb-planned"]
 
 
 def test_a_thousand_revisions_in_a_row_are_one_column() -> None:

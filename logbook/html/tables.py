@@ -27,5 +27,9 @@ def _row(table: Table, number: int, context: Context) -> str:
 
 
 def _cell(cell: Line, column: int, table: Table, context: Context, scope: str | None) -> str:
-    classes = "lb-number" if column in table.numeric else ""
+    classes = ""
+    if column in table.numeric:
+        # Words in a column of figures ("not known: ...") may be long and then have to wrap; figures never do.
+        figure = scope == "col" or any(sign.isdigit() for sign in line_words(cell))
+        classes = "lb-number" if figure else "lb-number lb-words"
     return element("td" if scope is None else "th", line_html(cell, context.url), classes, scope=scope)

@@ -12,8 +12,11 @@ from logbook.plots.scales import Scale
 from logbook.plots.shapes import Look, Shape, Sheet, Words, line, strokes
 from logbook.plots.style import FRAME, GRID, QUIET, TEXT, WIDTH, shortened, text_width
 
-_BAR = 11.0
-_BETWEEN = 14.0
+# A bar's row is as high as its words are on a phone, so that the shares of two groups do not run into each other.
+_BAR = 18.0
+_ROOM = 3.0
+_BASELINE = 13.5
+_BETWEEN = 8.0
 _LONGEST = 22
 _VALUE_ROOM = 74.0
 _FOOT = 24.0
@@ -62,12 +65,12 @@ def _grid(scale: Scale, top: float, bottom: float) -> list[Shape]:
 
 def _bar(scale: Scale, value: float, top: float, group: int) -> list[Shape]:
     if not isfinite(value):
-        return [Words(scale.start + 6.0, top + 10.0, "not known", look=QUIET)]
+        return [Words(scale.start + 6.0, top + _BASELINE, "not known", look=QUIET)]
     end = round(scale.at(max(value, 0.0)), 1)
-    shapes = _block(scale.start, end, top + 1.0, top + _BAR - 1.0, group)
+    shapes = _block(scale.start, end, top + _ROOM, top + _BAR - _ROOM, group)
     percent = 100 * value
     words = f"{percent:.1f} %" if abs(percent) < 10 else f"{percent:.0f} %"
-    return [*shapes, Words(end + 6.0, top + 10.0, words, look=TEXT)]
+    return [*shapes, Words(end + 6.0, top + _BASELINE, words, look=TEXT)]
 
 
 def _block(left: float, right: float, top: float, bottom: float, group: int) -> list[Shape]:

@@ -63,6 +63,7 @@ def _dimensions() -> dict[str, Dimension]:
         ("capacitance", "F", "a capacitance", "100 pF", "pF nF uF"),
         ("inductance", "H", "an inductance", "220 nH", "nH uH mH"),
         ("length", "m", "a length", "1.5 m", "m mm cm"),
+        ("pushing", "Hz/V", "a change of frequency per volt", "20 kHz/V", "Hz/V kHz/V MHz/V"),
         ("divisions", "div", "a number of divisions", "3.2 div", "div"),
         ("voltage_ratio", "V/V", "a ratio of voltages", "0.5 V/V", "V/V mV/V uV/V"),
     )
@@ -105,6 +106,7 @@ _PREFIXED = {
     "capacitance": "F",
     "inductance": "H",
     "length": "m",
+    "pushing": "Hz/V",
     "voltage_ratio": "V/V Vrms/V",
 }
 

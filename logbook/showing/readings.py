@@ -16,11 +16,16 @@ from logbook.showing.words import change, plain, reason, result_words
 
 
 def show_results(block: Block, outcome: Outcome, view: View) -> list[Piece]:
-    """The results of a block with their deltas, and beneath them how the numbers came about."""
+    """The results of a block with their deltas, with the cautions that they call for."""
+    return [*result_cautions(outcome.results), *results_pieces(outcome, view)]
+
+
+def results_pieces(outcome: Outcome, view: View) -> list[Piece]:
+    """The results with their deltas, and beneath them how the numbers came about."""
     results = list(outcome.results)
     if not results:
         return []
-    pieces = [*result_cautions(results), results_table(results, view)]
+    pieces: list[Piece] = [results_table(results, view)]
     pieces += [Text(("Conditions: ", Muted(words))) for words in _conditions(results)]
     pieces += [Note(note, "caution") for note in dict.fromkeys(n for r in results for n in r.notes)]
     pieces += folded("How these values come onto equal terms", _corrections(results))

@@ -19,9 +19,14 @@ def target_words(target: Target) -> str:
 
 def probability_words(verdict: TargetVerdict) -> str:
     """The probability that the limit is met, in percent; why not, where there is none."""
-    if verdict.probability is None or isnan(verdict.probability):
+    return probability_text(verdict.probability)
+
+
+def probability_text(probability: float | None) -> str:
+    """A probability in percent; nothing where there is none."""
+    if probability is None or isnan(probability):
         return ""
-    p = 100 * verdict.probability
+    p = 100 * probability
     if p > 99.9 or p < 0.1:
         return "over 99.9 %" if p > 99.9 else "under 0.1 %"
     return f"{p:.1f} %" if p < 10 or p > 90 else f"{p:.0f} %"

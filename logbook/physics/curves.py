@@ -8,9 +8,12 @@ from __future__ import annotations
 from typing import NamedTuple
 
 import numpy as np
+import numpy.typing as npt
 
 from logbook.physics.constants import Array, V
 from logbook.physics.decibels import positive_or_nan
+
+Indices = npt.NDArray[np.intp]
 
 
 class Peak(NamedTuple):
@@ -28,7 +31,7 @@ class Edges(NamedTuple):
     upper: Array
 
 
-def parabola_top(x: Array, y: Array, index: Array) -> tuple[Array, Array]:
+def parabola_top(x: Array, y: Array, index: Indices) -> tuple[Array, Array]:
     """Top of the parabola through samples i-1, i, i+1, uneven steps allowed: x (Hz) and y (dB), each as `index` (int).
 
     p(x) = y_i + b (x - x_i) + a (x - x_i)^2; top at x_i - b/2a, y_i - b^2/4a. The sample itself where i is the first
@@ -182,24 +185,25 @@ def passband_ripple(x: Array, y: Array, below_db: float, excursion_db: float = 0
     return float(np.max(parabola_top(x, y, tops)[1]) - np.min(y[between]))
 
 
-def maxima(y: Array, excursion_db: float) -> Array:
+def maxima(y: Array, excursion_db: float) -> Indices:
     """Indices (int) of the local maxima from which y (dB, (N,)) falls by excursion_db at least before it rises higher.
 
     So on both sides: a sample at an edge is none. Where several samples are level the middle one stands for them; nan
     counts as the lowest value there is. Of maxima equally high without such a fall between them the first counts.
     Source: peak excursion as on spectrum analysers; a topographic prominence of excursion_db or more.
     """
-    lowest = np.nanmin(y, initial=np.inf)
-    level = np.where(np.isnan(y), lowest, y)
-    if not len(y) or not np.all(np.isfinite(level)):
-        return np.empty(0, dtype=np.intp)  # type: ignore[return-value]
+    known = y[np.isfinite(y)]
+    if not len(known):
+        return np.empty(0, dtype=np.intp)
+    level = np.where(np.isnan(y), known.min(), y)
     starts = np.flatnonzero(np.concatenate([[True], np.diff(level) != 0]))
     middles = (starts + np.concatenate([starts[1:], [len(level)]]) - 1) // 2
     runs = level[starts]
     steps = np.sign(np.diff(runs))
     turns = np.concatenate([[0], np.flatnonzero(np.diff(steps)) + 1, [len(runs) - 1]])
     tops = _tops(runs[turns].tolist(), excursion_db)
-    return middles[turns[tops]]
+    found: Indices = middles[turns[tops]]
+    return found
 
 
 def _tops(values: list[float], excursion_db: float) -> list[int]:

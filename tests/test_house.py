@@ -23,7 +23,7 @@ FLOORS: tuple[frozenset[str], ...] = tuple(
         "model",
         "fields hardware",
         "bench revision prediction stage_fields spurs detector",
-        "findings terms",
+        "findings terms emissions",
         "compare plots",
         "kind",
         "showing html terminal",

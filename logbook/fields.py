@@ -9,7 +9,7 @@ from typing import Any
 
 from logbook.model import Values
 from logbook.problems import Place, Problems, did_you_mean
-from logbook.quantity import Quantity, QuantityError, read_quantity, read_repeated
+from logbook.quantity import Quantity, QuantityError, has_level, read_quantity, read_repeated
 from logbook.yaml_nodes import Mapping, Node, Scalar
 from logbook.yaml_nodes import Sequence as YamlSequence
 
@@ -189,9 +189,17 @@ def quantity(
             least = "above zero" if positive else "zero or more"
             asked.fault(scalar.place, "sign", f"'{scalar.text}' at '{asked.what}': expected {least}.", instead)
             return None
+        if not has_level(found, dimension):
+            _no_level(scalar, asked)
+            return None
         return found
 
     return read
+
+
+def _no_level(scalar: Scalar, asked: Asked) -> None:
+    message = f"'{scalar.text}' at '{asked.what}': a level needs a power or voltage above zero."
+    asked.fault(scalar.place, "sign", message)
 
 
 def _repeated(node: YamlSequence, dimension: str | tuple[str, ...], asked: Asked) -> Quantity | None:
@@ -202,7 +210,8 @@ def _repeated(node: YamlSequence, dimension: str | tuple[str, ...], asked: Asked
         if scalar is None:
             continue
         try:
-            read_quantity(scalar.text, dimension, asked.what.replace("_", " "))
+            if not has_level(read_quantity(scalar.text, dimension, asked.what.replace("_", " ")), dimension):
+                _no_level(scalar, asked)
         except QuantityError as error:
             place = Place(scalar.place.file, scalar.place.line, scalar.place.column + error.offset)
             asked.fault(place, error.code, error.message, error.hint)

@@ -23,6 +23,7 @@ from logbook.units import ABSOLUTE_ZERO_C, DECIBEL_DIMENSIONS, Unit, find_unit
 __all__ = [
     "Quantity",
     "QuantityError",
+    "has_level",
     "key_frequency",
     "level_dbm",
     "read_quantity",
@@ -261,6 +262,16 @@ def level_dbm(quantity: Quantity, impedance_ohm: float) -> tuple[float, float | 
     if quantity.dimension == "voltage":
         return _dbm(quantity, 20.0, 10.0 * log10(impedance_ohm))
     raise ValueError(f"a {quantity.dimension} has no level")
+
+
+_OF_LEVELS = {"level", "voltage_level", "power", "voltage", "divisions"}
+
+
+def has_level(found: Quantity, wanted: str | tuple[str, ...]) -> bool:
+    """Whether a quantity is a level where nothing but a level is wanted: zero and negative powers have no dB."""
+    asked_for = {wanted} if isinstance(wanted, str) else set(wanted)
+    only_levels = "level" in asked_for and asked_for <= _OF_LEVELS
+    return found.value > 0 or not only_levels or found.dimension not in ("power", "voltage")
 
 
 def _dbm(quantity: Quantity, decibels: float, below_db: float) -> tuple[float, float | None]:

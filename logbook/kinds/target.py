@@ -11,8 +11,9 @@ from logbook.model import Block, Values, result_key
 from logbook.pieces import Piece
 from logbook.problems import Place, did_you_mean
 from logbook.quantities import KNOWN, known_quantity
-from logbook.quantity import QuantityError, read_quantity
+from logbook.quantity import Quantity, QuantityError, has_level, level_dbm, read_quantity
 from logbook.showing.targets import targets_table
+from logbook.stage_fields import LEVEL
 from logbook.units import DIMENSIONS
 
 FIELDS = (
@@ -45,8 +46,12 @@ def declare(values: Values, session: Session) -> Target | None:
     if known is None and (hint := did_you_mean(name, KNOWN)).startswith("Did"):
         session.fault(values.place("quantity"), "unknown-quantity", f"'{name}' is no quantity known by name.", hint)
         return None
-    dimension = known.dimension if known else tuple(DIMENSIONS)
-    limits = _limits(values["limit"], dimension, values.place("limit"), session)
+    dimension: str | tuple[str, ...] = known.dimension if known else tuple(DIMENSIONS)
+    # A level may be given in watts or volts, as everywhere.
+    dimension = LEVEL if dimension == "level" else dimension
+    described = session.chains.get(chain or "")
+    impedance = 50.0 if described is None else described.impedance_ohm
+    limits = _limits(values["limit"], dimension, impedance, values.place("limit"), session)
     if chain is None or limits is None:
         return None
     low, high, unit = limits
@@ -70,31 +75,42 @@ def declare(values: Values, session: Session) -> Target | None:
 
 
 def _limits(
-    written: str, dimension: str | tuple[str, ...], place: Place, session: Session
+    written: str, dimension: str | tuple[str, ...], impedance_ohm: float, place: Place, session: Session
 ) -> tuple[float | None, float | None, str] | None:
     found = _LIMIT.fullmatch(written)
     if found is None:
         hint = "Such as '<= -125 dBm', '>= 6 dB' or '40 dB .. 44 dB'."
         session.fault(place, "limit", f"'{written}' is no limit.", hint)
         return None
+    given: list[tuple[float, str]] = []
+    offset = 0
     try:
-        if found["sign"]:
-            offset = found.start("one")
-            one = read_quantity(found["one"], dimension, "limit")
-            low, high = (None, one.value) if found["sign"] in ("<=", "≤") else (one.value, None)
-            return low, high, one.unit
-        offset = found.start("low")
-        first = read_quantity(found["low"], dimension, "limit")
-        offset = found.start("high")
-        last = read_quantity(found["high"], dimension, "limit")
+        for side in ("one",) if found["sign"] else ("low", "high"):
+            offset = found.start(side)
+            limit = read_quantity(found[side], dimension, "limit")
+            if not has_level(limit, dimension):
+                message = f"'{found[side]}' is no limit of a level: that needs a power or voltage above zero."
+                raise QuantityError("sign", message)
+            given.append(_in_base(limit, dimension, impedance_ohm))
     except QuantityError as error:
         there = Place(place.file, place.line, place.column + offset + error.offset)
         session.fault(there, error.code, error.message, error.hint)
         return None
-    if first.value > last.value or first.unit != last.unit:
+    (first, unit), (last, other) = given[0], given[-1]
+    if found["sign"]:
+        return (None, last, unit) if found["sign"] in ("<=", "≤") else (first, None, unit)
+    if unit != other:
+        session.fault(place, "limit", f"'{written}' has limits of two sorts, {unit} and {other}.")
+        return None
+    if first > last:
         session.fault(place, "limit", f"'{written}' runs from high to low; the lower limit comes first.")
         return None
-    return first.value, last.value, first.unit
+    return first, last, unit
+
+
+def _in_base(limit: Quantity, dimension: str | tuple[str, ...], impedance_ohm: float) -> tuple[float, str]:
+    """The limit in base units; what limits a level, in dBm."""
+    return (level_dbm(limit, impedance_ohm)[0], "dBm") if dimension == LEVEL else (limit.value, limit.unit)
 
 
 def show(block: Block, outcome: Outcome, view: View) -> list[Piece]:

@@ -3,21 +3,32 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Any
 
 from logbook.hardware import Parameter
 from logbook.model import Source
+from logbook.physics.constants import Array
 from logbook.physics.detector import DetectorFit, level_from_output
 from logbook.quantity import Quantity
 from logbook.quantity_display import show_value
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True, slots=True, eq=False)
+class Steps:
+    """What was put in (dBm, (N,)) and what came out (V or divisions, (N,)), with the outputs' stated doubt."""
+
+    input_dbm: Array
+    output: Array
+    unit: str
+    dimension: str
+    u_output: float | None
+
+
+@dataclass(frozen=True, slots=True, eq=False)
 class Calibration:
     """A detector's line as of `since`; levels in dBm, output in V or divisions.
 
     `drive` is the accuracy of the source that stepped it, common to all that is read through it. `lowest` and
-    `highest` are the levels between which it was stepped; `points` what was put in and came out.
+    `highest` are the levels between which it was stepped, `window_dbm` those between which the line was fitted.
     """
 
     name: str
@@ -28,7 +39,8 @@ class Calibration:
     drive: Parameter | None
     lowest_dbm: float
     highest_dbm: float
-    points: Any = None
+    steps: Steps
+    window_dbm: tuple[float, float]
 
     def level(self, output: Quantity, departure: Source) -> tuple[float, dict[Source, float], tuple[str, ...]]:
         """The level of an output in dBm, its doubt by source (dB) without that of the output, and notes."""

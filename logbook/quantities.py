@@ -53,6 +53,7 @@ _ROWS: tuple[tuple[str, str, Better, float, Side, bool], ...] = (
     ("intercept", "level", "neither", 0.5, "drive", False),
     ("conformance_error", "ratio", "lower", 0.1, "none", False),
     ("step_error", "ratio", "lower", 0.1, "none", False),
+    ("log_range", "ratio", "higher", 0.5, "none", False),
     ("frequency", "frequency", "neither", 1e-6, "none", False),
     ("centre", "frequency", "neither", 1e-4, "none", False),
     ("noise_ahead", "level", "lower", 0.2, "shown", True),

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from math import isnan
 
 from logbook.findings import Delta
@@ -21,9 +22,19 @@ _ACRONYMS = {
 }
 
 
+# A level carried in the name, or two of them: bandwidth_3db, shape_factor_60_3.
+_AT_LEVELS = re.compile(r"(?P<name>[a-z_]+)_(?P<first>\d+(?:\.\d+)?)(?:db|_(?P<second>\d+(?:\.\d+)?))")
+
+
 def quantity_words(quantity: str) -> str:
     """`noise_floor` as `noise floor`, `nf` as `noise figure`."""
-    return _ACRONYMS.get(quantity, quantity.replace("_", " "))
+    found = _AT_LEVELS.fullmatch(quantity)
+    if found is None:
+        return _ACRONYMS.get(quantity, quantity.replace("_", " "))
+    name, first, second = found["name"].replace("_", " "), found["first"], found["second"]
+    if second:
+        return f"{name} {first}:{second}"
+    return f"range within ±{first} dB" if name == "log range" else f"{name} at -{first} dB"
 
 
 def result_words(quantity: str, at_hz: float | None, name: str, chain: str = "") -> str:

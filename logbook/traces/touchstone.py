@@ -107,7 +107,8 @@ def _values(head: Head, ports: int, lines: list[str], faults: Faults) -> Floats 
     if numbers is None or len(faults):
         return None
     values = numbers.reshape(len(records), 1 + 2 * pairs)
-    values[:, 0] *= head.factor
+    with np.errstate(over="ignore"):
+        values[:, 0] *= head.factor
     _check_frequencies(values[:, 0], records, head, faults)
     return values
 
@@ -192,8 +193,10 @@ def _numbers(rows: list[Row], lines: list[str], faults: Faults) -> Floats | None
 
 
 def _check_frequencies(frequency_hz: Floats, starts: list[int], head: Head, faults: Faults) -> None:
-    if frequency_hz[0] < 0:
-        faults.add(starts[0], 1, "number", "A frequency is below zero.")
+    for index in np.flatnonzero((frequency_hz < 0) | np.isinf(frequency_hz)):
+        faults.add(
+            starts[index], 1, "number", "This is no frequency: it is below zero, or beyond what can be computed."
+        )
     for index in np.flatnonzero(np.diff(frequency_hz) <= 0):
         word = "is the same as" if frequency_hz[index + 1] == frequency_hz[index] else "is lower than"
         message = f"This frequency {word} the one before it, on line {starts[index]}."

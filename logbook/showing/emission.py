@@ -80,8 +80,8 @@ def _bandwidths(emission: Emission) -> list[Piece]:
         return []
     words = (
         f"Read in {show_frequency(rbw)}; the reference bandwidth at these frequencies is {', '.join(sorted(other))} "
-        "(ITU Radio Regulations, Appendix 3). For a clean line that makes no difference; one that is modulated or noisy "
-        "reads too low in a narrower bandwidth."
+        "(ITU Radio Regulations, Appendix 3). For a clean line that makes no difference; one that is modulated or "
+        "noisy reads too low in a narrower bandwidth."
     )
     return [Note(words)]
 

@@ -22,10 +22,11 @@ _WIDE = 1 / 150
 
 @dataclass(frozen=True, slots=True)
 class Plan:
-    """What was asked, and the choices in their rank."""
+    """What was asked, the choices in their rank, and what is heard whichever is taken."""
 
     asked: Asked
     choices: tuple[Choice, ...]
+    common: tuple[Crossing, ...] = ()
 
 
 def plan_pieces(plan: Plan) -> list[Piece]:
@@ -39,7 +40,7 @@ def plan_pieces(plan: Plan) -> list[Piece]:
     pieces += _map(usable[0], plan)
     for each in usable[1:]:
         pieces.append(Folded(f"IF {each.name}: {_count(each)}", tuple(_map(each, plan))))
-    return pieces
+    return [*pieces, *_listed(plan.common, "On the signal frequency, whichever is taken")]
 
 
 def _why_best(usable: Sequence[Choice]) -> str:
@@ -89,28 +90,30 @@ def _map(choice: Choice, plan: Plan) -> list[Piece]:
     if not choice.crossings:
         return [Note(f"IF {choice.name}: no product up to order {plan.asked.order} falls into it.", "good")]
     caption = f"What falls where with IF {choice.name}"
-    shown, rest = choice.crossings[:_ROWS], choice.crossings[_ROWS:_MORE]
-    pieces: list[Piece] = [
-        Picture(
-            title=f"Products over the tuning range, IF {choice.name}",
-            drawing=_chart(choice, plan),
-            alt=_alt(choice, plan),
-            numbers=_table(shown, caption),
-        )
-    ]
-    if rest:
-        left = len(choice.crossings) - len(shown)
-        said = (
-            f"{left} more" if left == len(rest) else f"{left} more, of which these {len(rest)} are of the lowest order"
-        )
-        pieces.append(Folded(said, (_table(rest, f"{caption}, continued"),)))
-    return pieces
+    title = f"Products over the tuning range, IF {choice.name}"
+    shown = _table(choice.crossings[:_ROWS], caption)
+    picture = Picture(title, _chart(choice, plan), _alt(choice, plan), shown)
+    return [picture, *_rest(choice.crossings, caption)]
+
+
+def _listed(found: Sequence[Crossing], caption: str) -> list[Piece]:
+    return [_table(found[:_ROWS], caption), *_rest(found, caption)] if found else []
+
+
+def _rest(found: Sequence[Crossing], caption: str) -> list[Piece]:
+    """What the table above leaves out, folded; of very many those of the lowest order."""
+    rest, left = found[_ROWS:_MORE], len(found) - _ROWS
+    if not rest:
+        return []
+    said = f"{left} more" if left == len(rest) else f"{left} more; these {len(rest)} are of the lowest order"
+    return [Folded(said, (_table(rest, f"{caption}, continued"),))]
 
 
 def _alt(choice: Choice, plan: Plan) -> str:
     first = choice.crossings[0]
     where = f"the first is {first.words}, of order {first.order}, at {_band((first.low_hz, first.high_hz))}"
-    return f"{_count(choice)} between {_band(plan.asked.tune)}; {where}.".capitalize()
+    count = _count(choice)
+    return f"{count[:1].upper()}{count[1:]} from {_band(plan.asked.tune)}; {where}."
 
 
 def _table(found: Sequence[Crossing], caption: str) -> Table:

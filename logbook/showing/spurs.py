@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from logbook.pieces import Folded, Heading, Line, Muted, Note, Piece, Strong, Table, Text, Verdict
+from logbook.pieces import Folded, Line, Muted, Note, Piece, Strong, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_frequency
 from logbook.spurs.candidates import Candidate
 from logbook.spurs.evidence import Trial
@@ -42,7 +42,7 @@ class Spur:
 def spur_pieces(spur: Spur) -> list[Piece]:
     """What the spur may be, in a table, and beneath it what to try next."""
     left = [each for each in spur.candidates if not each.struck]
-    pieces: list[Piece] = [Heading(4, spur.words), Text(_found(spur, left))]
+    pieces: list[Piece] = [Text((Strong(f"{spur.words}. "), _found(spur, left)))]
     shown, rest = spur.candidates[:_ROWS], spur.candidates[_ROWS:]
     if shown:
         pieces.append(_table(spur, shown, f"Candidates for the {spur.words[:1].lower()}{spur.words[1:]}"))

@@ -121,8 +121,8 @@ def _drift(detector: Calibration, before: Calibration) -> str:
     slope = detector.fit.slope / before.fit.slope - 1
     moved = detector.fit.intercept_dbm - before.fit.intercept_dbm
     return (
-        f"Since {before.since} its slope has changed by {100 * slope:+.2f} % and its intercept by {moved:+.2f} dB; what "
-        "of it is beyond doubt stands with the results."
+        f"Since {before.since} its slope has changed by {100 * slope:+.2f} % and its intercept by {moved:+.2f} dB; "
+        "what of it is beyond doubt stands with the results."
     )
 
 

@@ -15,7 +15,7 @@ from logbook.showing.spur_map import Plan
 from logbook.showing.spurs import Spur
 from logbook.spurs.candidates import candidates
 from logbook.spurs.evidence import INPUT, TUNING, Drop, Move, judged, next_trial
-from logbook.spurs.planning import Asked, ranked_choices
+from logbook.spurs.planning import Asked, common_crossings, ranked_choices
 from logbook.spurs.setting import SIGNAL, Setting, Spot, SpurSource, at_stage, narrowest, own_sources, spots_of
 
 # Beyond this many sources the products of high order are too many to be worth a list.
@@ -207,7 +207,8 @@ def whole_plan(avoid: Values, values: Values, search: Search) -> Plan | None:
     side = avoid.get("side", "both")
     sides = ("high", "low") if side == "both" else (side,)
     asked = Asked((low.value, high.value), width, search.order, _fixed_sources(search, first is not None))
-    return Plan(asked, tuple(ranked_choices(asked, list(dict.fromkeys(ifs)), sides)))
+    choices = ranked_choices(asked, list(dict.fromkeys(ifs)), sides)
+    return Plan(asked, tuple(choices), tuple(common_crossings(asked)))
 
 
 def _fixed_sources(search: Search, has_mixer: bool) -> tuple[SpurSource, ...]:

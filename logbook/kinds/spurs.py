@@ -76,7 +76,7 @@ sources:
   - {name: clock, frequency: 25 MHz}
   - {name: reference, frequency: 10 MHz, harmonics: 20}
   - {name: switcher, frequency: 612 ± 1 kHz, harmonics: 40, note: supply of the display}
-  - {name: station, frequency: 100.2 MHz, harmonics: 2, enters: input, movable: false}
+  - {name: station, frequency: 94.7 MHz, harmonics: 2, enters: input, movable: false}
 order: 7
 bench: shack
 seen:

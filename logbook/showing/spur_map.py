@@ -15,7 +15,7 @@ from logbook.spurs.setting import SIGNAL
 # Of a busy map the lowest orders are named; of a long table the rest stands folded beneath.
 _MARKS = 5
 _ROWS = 20
-_MORE = 400
+_MORE = 150
 # A stretch wider than this part of the range is drawn as a line and not as a point.
 _WIDE = 1 / 150
 

@@ -7,7 +7,6 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from logbook.physics.constants import Array
 from logbook.physics.mixing import (
     Orders,
     half_if_frequency,
@@ -141,18 +140,18 @@ def behind_mixer(row: Row, spot: Spot, setting: Setting) -> Row:
 
 
 def response_of(row: Row, spot: Spot, setting: Setting, width_hz: float) -> str:
-    """Image, half-IF or IF feed-through, when a product comes to its IF in that way; else nothing."""
+    """By which response of the mixer one source, or a harmonic of it, comes to the IF; nothing for other products."""
     if spot.lo < 0:
         entering = [abs(n) for n, source in zip(row, setting.sources, strict=True) if n and source.enters]
         return TRUE_SIGNAL if entering == [1] and sum(map(abs, row)) == 1 else ""
     lo, before = setting.sources[spot.lo].at(setting.tuned_hz), setting.spots[spot.before].frequency_hz
     times = abs(row[spot.lo])
     rest = tuple(0 if i == spot.lo else n for i, n in enumerate(row))
-    if not any(rest):
+    if sum(1 for n in rest if n) != 1:
         return ""
     hz = abs(float(np.array(rest) @ setting.frequencies_hz))
     if times == 0:
-        return FEED_THROUGH if sum(1 for n in rest if n) == 1 else ""
+        return FEED_THROUGH
     if times == 1:
         return IMAGE if abs(hz - image_frequency(before, lo, spot.output)) <= width_hz else ""
     if times == 2 and all(n % 2 == 0 for n in rest):
@@ -244,6 +243,14 @@ def rows_of(found: Sequence[Candidate]) -> Orders:
     return np.array([each.orders for each in found], dtype=np.int64)
 
 
-def target_follows(found: Sequence[Candidate]) -> Array:
-    """How far each candidate's spot moves with the tuning, [candidates]."""
-    return np.array([each.spot.follows for each in found])
+def heard_row(candidate: Candidate, setting: Setting) -> Row:
+    """The row by which a candidate arrives where the listener hears it: behind the last mixer, or where it was seen.
+
+    A shift of an oscillator acts on all that is converted with it, also on what is on the signal frequency.
+    """
+    row = candidate.orders
+    if setting.display:
+        names = [spot.name for spot in setting.spots]
+        for spot in setting.spots[names.index(candidate.spot.name) + 1 :]:
+            row = behind_mixer(row, spot, setting)
+    return row

@@ -17,8 +17,8 @@ from logbook.physics.experiments import (
     predicted_move,
     tuning_move,
 )
-from logbook.quantity_display import show_delta, show_frequency, show_value
-from logbook.spurs.candidates import Candidate, rows_of, target_follows
+from logbook.quantity_display import show_delta, show_frequency
+from logbook.spurs.candidates import Candidate, heard_row, rows_of
 from logbook.spurs.setting import SIGNAL, Setting
 
 TUNING, INPUT = "tuning", "input"
@@ -72,12 +72,14 @@ class Trial:
 
 def expected_move(found: Sequence[Candidate], setting: Setting, source: str, by_hz: float) -> Array:
     """How far each candidate would move when a source, or the tuning, is shifted; Hz, [candidates]."""
-    rows, hz = rows_of(found), setting.frequencies_hz
+    hz = setting.frequencies_hz
+    rows = np.array([heard_row(each, setting) for each in found], dtype=np.int64)
+    last = setting.spots[-1].follows if setting.display else 0.0
     if source == TUNING:
-        return tuning_move(rows, hz, setting.follows, target_follows(found), by_hz)
+        return tuning_move(rows, hz, setting.follows, np.full(len(rows), last), by_hz)
     index = _index(setting, source)
     if setting.display:
-        return display_move(rows, hz, setting.follows, target_follows(found), index, by_hz)
+        return display_move(rows, hz, setting.follows, np.full(len(rows), last), index, by_hz)
     return predicted_move(rows, hz, index, by_hz)
 
 
@@ -135,14 +137,21 @@ def _against_move(move: Move, said: float) -> str:
     by, seen = show_delta(move.by_hz, "Hz"), show_delta(move.seen_hz, "Hz")
     if isnan(said):
         return f"it would be heard at every tuning, and moved by {seen}"
-    would = f"move it by {show_delta(said, 'Hz')}" if said else "not move it"
-    return f"{move.source} shifted by {by} would {would}; seen {seen if move.seen_hz else 'no move'}"
+    would = f"move it by {show_delta(round(said, 3), 'Hz')}" if said else "not move it"
+    moved = f"moved by {seen}" if abs(move.seen_hz) > move.within_hz else "stayed"
+    return f"{move.source} shifted by {by} would {would}; it {moved}"
 
 
 def _against_drop(drop: Drop, said: float) -> str:
-    would = f"fall by {show_value(said, 'dB')}" if said else "stay as it is"
-    by, seen = show_value(drop.by_db, "dB"), show_value(drop.seen_db, "dB")
-    return f"with {drop.source} {by} lower it would {would}; seen {seen}"
+    would = f"fall by {_db(said)}" if said else "stay as it is"
+    fell = f"rose by {_db(-drop.seen_db)}" if drop.seen_db < 0 else f"fell by {_db(drop.seen_db)}"
+    seen = fell if abs(drop.seen_db) > drop.within_db else "stayed"
+    thing = "the input" if drop.source == INPUT else drop.source
+    return f"with {thing} {_db(drop.by_db)} lower it would {would}; it {seen}"
+
+
+def _db(db: float) -> str:
+    return f"{db:.4g} dB"
 
 
 def _hz(hz: float) -> str:
@@ -190,11 +199,11 @@ def _movable(setting: Setting, done: set[str]) -> list[str]:
 
 def _what_to_do(what: str, name: str, by_hz: float, setting: Setting) -> str:
     if what == "drop":
-        return f"Put {show_value(_DROP_DB, 'dB')} ahead of the input."
+        return f"Put {_db(_DROP_DB)} ahead of the input."
     by = show_frequency(by_hz)
     if name == TUNING:
         return f"Tune by {by} and watch how far the spur moves in the pass-band."
-    again = " and tune to the spur again" if setting.display else ""
+    again = " and tune to the spur again" if setting.display else " and follow the spur with the instrument"
     thing = "the signal that is fed in" if name == SIGNAL else name
     return f"Shift {thing} up by {by}{again}."
 
@@ -221,7 +230,7 @@ def _outcome_words(said: list[float], what: str, name: str) -> str:
     if isnan(low):
         return "is heard at every tuning"
     if what == "drop":
-        return f"falls by {show_value(low, 'dB')}" if high else "stays"
+        return f"falls by {_db(low)}" if high else "stays"
     if name == TUNING:
         return f"moves by {_hz(low)}" if low == high else f"moves by {_hz(low)} to {_hz(high)}"
     if not low and not high:

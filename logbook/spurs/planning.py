@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections import Counter
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -14,6 +14,7 @@ from logbook.spurs.candidates import Row, ahead_of_mixer, all_products, behind_m
 from logbook.spurs.setting import SIGNAL, Setting, Spot, SpurSource, behind, product_words
 
 LO = "lo"
+_SIGNAL = SpurSource(SIGNAL, 0.0, 1.0, enters=True, foreign=False)
 HIGH, LOW = "high", "low"
 
 
@@ -75,6 +76,18 @@ def ranked_choices(asked: Asked, ifs: Sequence[float], sides: Sequence[str]) -> 
     return sorted(found, key=lambda each: (bool(each.why), each.counts(most), each.affected))
 
 
+def common_crossings(asked: Asked) -> list[Crossing]:
+    """What the foreign sources put onto the signal frequency by themselves, whatever IF and oscillator are taken."""
+    spot = _signal_spot(asked, len(asked.sources) + 1)
+    setting = Setting((_SIGNAL, *asked.sources), (spot,), asked.tune[0])
+    rows = all_products(setting.sources, asked.order, [])
+    return sorted(_crossings(rows[rows[:, 0] == 0], spot, setting, asked), key=_rank)
+
+
+def _rank(crossing: Crossing) -> tuple[int, float, str]:
+    return crossing.order, crossing.low_hz, crossing.words
+
+
 def _choice(asked: Asked, if_hz: float, side: str) -> Choice:
     low, high = asked.tune
     reach = asked.bandwidth_hz / 2.0
@@ -86,11 +99,12 @@ def _choice(asked: Asked, if_hz: float, side: str) -> Choice:
     if low - reach <= if_hz <= high + reach:
         return Choice(if_hz, side, band, image, half, why="the IF lies inside the tuning range")
     setting = _setting(asked, lo, output, low)
-    found: list[Crossing] = []
     rows = all_products(setting.sources, asked.order, [1])
-    for spot in setting.spots:
-        found += _crossings(rows, spot, setting, asked)
-    found.sort(key=lambda each: (each.order, each.low_hz, each.words))
+    own, mixed = setting.spots
+    # Of what falls onto the signal frequency only what the oscillator has a part in depends on the choice.
+    onto_signal = rows[(rows[:, 0] == 0) & (rows[:, 1] != 0)]
+    found = _crossings(onto_signal, own, setting, asked) + _crossings(rows, mixed, setting, asked)
+    found.sort(key=_rank)
     return Choice(if_hz, side, band, image, half, tuple(found), _covered(found) / max(high - low, 1e-9))
 
 
@@ -104,18 +118,19 @@ def _oscillator(if_hz: float, side: str, highest_hz: float) -> SpurSource:
 
 
 def _setting(asked: Asked, lo: SpurSource, output: str, tuned_hz: float) -> Setting:
-    signal = SpurSource(SIGNAL, 0.0, 1.0, enters=True, foreign=False)
-    sources = (signal, lo, *asked.sources)
-    wanted = tuple(int(i == 0) for i in range(len(sources)))
-    reach = asked.bandwidth_hz / 2.0
-    own = Spot(SIGNAL, tuned_hz, 1.0, reach, wanted)
-    return Setting(sources, (own, behind(own, 0, sources, 1, tuned_hz, output, reach, "IF")), tuned_hz)
+    sources = (_SIGNAL, lo, *asked.sources)
+    own = _signal_spot(asked, len(sources))
+    mixed = behind(own, 0, sources, 1, tuned_hz, output, own.half_width_hz, "IF")
+    return Setting(sources, (own, mixed), tuned_hz)
+
+
+def _signal_spot(asked: Asked, length: int) -> Spot:
+    wanted = tuple(int(i == 0) for i in range(length))
+    return Spot(SIGNAL, asked.tune[0], 1.0, asked.bandwidth_hz / 2.0, wanted)
 
 
 def _crossings(rows: Orders, spot: Spot, setting: Setting, asked: Asked) -> list[Crossing]:
-    """Where the products fall onto a spot; of the signal's own only those that reach the IF tell anything."""
-    if spot.name == SIGNAL:
-        rows = rows[rows[:, 0] == 0]
+    """Where the products fall onto a spot."""
     at_zero = rows @ np.array([source.frequency_hz for source in setting.sources])
     half = spot.half_width_hz + np.abs(rows) @ setting.tolerances_hz
     start = spot.frequency_hz - spot.follows * setting.tuned_hz
@@ -123,7 +138,7 @@ def _crossings(rows: Orders, spot: Spot, setting: Setting, asked: Asked) -> list
     found = []
     for index, low, high in zip(ranges.product.tolist(), ranges.low_hz.tolist(), ranges.high_hz.tolist(), strict=True):
         row: Row = tuple(int(n) for n in rows[index])
-        there = _tuned(setting, 0.5 * (low + high), spot)
+        there = _tuned(setting, 0.5 * (low + high))
         if one_sign(row) == one_sign(spot.wanted) or _told_elsewhere(row, spot, there):
             continue
         response = response_of(row, there.spots[-1], there, float(half[index])) if spot.name != SIGNAL else ""
@@ -132,19 +147,22 @@ def _crossings(rows: Orders, spot: Spot, setting: Setting, asked: Asked) -> list
     return found
 
 
-def _tuned(setting: Setting, tuned_hz: float, spot: Spot) -> Setting:
+def _tuned(setting: Setting, tuned_hz: float) -> Setting:
     """The same setting at another tuning."""
-    own = setting.spots[0]
-    here = Spot(own.name, tuned_hz, 1.0, own.half_width_hz, own.wanted)
-    last = setting.spots[-1]
-    width = spot.half_width_hz
-    there = behind(here, 0, setting.sources, last.lo, tuned_hz, last.output, width, last.name)
-    return Setting(setting.sources, (here, there), tuned_hz)
+    own, *mixed = setting.spots
+    here = replace(own, frequency_hz=tuned_hz)
+    there = [
+        behind(here, 0, setting.sources, each.lo, tuned_hz, each.output, each.half_width_hz, each.name)
+        for each in mixed
+    ]
+    return Setting(setting.sources, (here, *there), tuned_hz)
 
 
 def _told_elsewhere(row: Row, spot: Spot, there: Setting) -> bool:
     """Whether the same product, ahead of the mixer or behind it, has a shorter row, by which it is counted."""
     mixer = there.spots[-1]
+    if mixer.lo < 0:
+        return False
     if spot.name == SIGNAL:
         other = behind_mixer(row, mixer, there)
     elif row[0] == 0:

@@ -43,6 +43,7 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
     """One instance lives through all rebuilds of `serve`."""
 
     serving = False
+    cache_folder: Path | None = None
     options: Options
     book: Book
     cache: Cache
@@ -67,9 +68,9 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
         polyfills = config.extra.setdefault("polyfills", [])
         if not config.use_directory_urls and SEARCH_SHIM not in polyfills:
             polyfills.append(SEARCH_SHIM)
-        root = Path(config.config_file_path).parent if config.config_file_path else Path.cwd()
-        if not hasattr(self, "cache"):
-            self.cache = Cache(root / self.config.cache)
+        folder = _root(config) / self.config.cache
+        if self.cache_folder != folder:
+            self.cache_folder, self.cache = folder, Cache(folder)
         return config
 
     @event_priority(-50)
@@ -80,7 +81,8 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
         self.book = make_book(sources.values(), folder, self.options.settings)
         self.entries = {entry.path: entry for entry in self.book.entries}
         self.site_files = files
-        pages = generated_pages(self.book)
+        # A page of that name which somebody wrote stands as it is.
+        pages = [page for page in generated_pages(self.book) if files.get_file_from_path(page.path) is None]
         self.made = {page.path: page.pieces for page in pages}
         self.made[HOME] = tuple(home_pieces(self.book))
         self._add_files(files, pages, config)
@@ -165,8 +167,7 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
 
     def on_env(self, env: Environment, /, *, config: MkDocsConfig, files: Files) -> Environment:
         """Keep compiled templates between builds."""
-        root = Path(config.config_file_path).parent if config.config_file_path else Path.cwd()
-        folder = root / self.config.cache / "templates"
+        folder = _root(config) / self.config.cache / "templates"
         try:
             folder.mkdir(parents=True, exist_ok=True)
         except OSError:
@@ -186,6 +187,11 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
             log.warning(failure_words(failed))
         elif failed:
             raise PluginError(f"{failure_words(failed)}; the site is in {config.site_dir}")
+
+
+def _root(config: MkDocsConfig) -> Path:
+    """The folder that paths in mkdocs.yml start from."""
+    return Path(config.config_file_path).parent if config.config_file_path else Path.cwd()
 
 
 def _path(to: str) -> str:

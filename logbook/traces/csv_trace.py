@@ -108,8 +108,7 @@ def column_numbers(columns: Columns, index: int, faults: Faults) -> Floats | Non
     """A column as numbers, (N,); None with a fault for each field that is not a finite number."""
     text = "\n".join(columns.cells[index])
     mixed = "," in text and "." in text
-    commas = columns.separator != "," and not mixed
-    cells = text.replace(",", ".").split("\n") if commas else text.split("\n")
+    cells = (text if mixed else text.replace(",", ".")).split("\n")
     try:
         values = np.array([float(cell) for cell in cells])
     except ValueError:

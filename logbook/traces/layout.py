@@ -69,9 +69,9 @@ def field_column(line: str, separator: str, index: int) -> int:
     return begins + len(rest) - len(rest.lstrip()) + 1
 
 
-def reads_as_number(field: str, separator: str) -> bool:
-    """Whether a field is a number, with a decimal comma where the separator is none."""
-    if separator != "," and re.fullmatch(r"[^,]*,[0-9][^,]*", field):
+def reads_as_number(field: str) -> bool:
+    """Whether a field is a number, with a decimal point or a comma; between commas only a quoted field has one."""
+    if "," in field and re.fullmatch(r"[^,]*,[0-9][^,]*", field):
         field = field.replace(",", ".")
     return is_number(field)
 
@@ -82,6 +82,9 @@ def find_layout(lines: list[str]) -> Layout | None:
     content = [entry for entry in written if not entry[1].lstrip().startswith(_COMMENTS)]
     sample = content if len(content) <= 2 * _SAMPLE else content[len(content) // 2 :: len(content) // _SAMPLE]
     separator, pattern = _separator(sample)
+    if not pattern:
+        # Where most lines are at fault the first few may tell.
+        separator, pattern = _separator(content[: 2 * _SAMPLE])
     if not pattern:
         return None
     start = _start(content, separator, pattern)
@@ -105,7 +108,7 @@ def _separator(sample: list[Line]) -> tuple[str, tuple[bool, ...]]:
         whole = 0
         for _, line in sample:
             fields = split_fields(line, separator)
-            pattern = tuple(reads_as_number(field, separator) for field in fields)
+            pattern = tuple(reads_as_number(field) for field in fields)
             if sum(pattern) >= 2:
                 patterns[pattern] += 1
                 whole += sum(pattern) == sum(map(bool, fields))
@@ -119,7 +122,7 @@ def _start(content: list[Line], separator: str, pattern: tuple[bool, ...]) -> in
     first = pattern.index(True)
 
     def patterned(index: int) -> tuple[bool, ...]:
-        return tuple(reads_as_number(field, separator) for field in split_fields(content[index][1], separator))
+        return tuple(reads_as_number(field) for field in split_fields(content[index][1], separator))
 
     start = next((index for index in range(len(content)) if patterned(index) == pattern), None)
     while start:
@@ -173,13 +176,13 @@ def _as_heads(line: str, separator: str, width: int) -> tuple[str, ...]:
     for fields in (split_fields(text, separator), re.split(r"\s{2,}", text)):
         while len(fields) > width and not fields[-1]:
             fields.pop()
-        if len(fields) == width and any(fields) and not any(reads_as_number(f, separator) for f in fields):
+        if len(fields) == width and any(fields) and not any(reads_as_number(f) for f in fields):
             return tuple(fields)
     return ()
 
 
 def _has_number(line: str, separator: str) -> bool:
-    return any(reads_as_number(field, separator) for field in split_fields(line, separator))
+    return any(reads_as_number(field) for field in split_fields(line, separator))
 
 
 def _units_of_axes(plain: list[Line], separator: str, width: int) -> tuple[str, ...]:

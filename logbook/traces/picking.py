@@ -48,12 +48,13 @@ def pick(columns: Columns, x: Wanted, y: Wanted, problems: Problems) -> Trace | 
             return None
         x_values = column_numbers(columns, x_index, faults)
         y_values = column_numbers(columns, y_index, faults)
-        _check_points_and_commas(columns, x_index, y_index, faults)
+        _check_commas(columns, x_index, y_index, faults)
         if x_values is not None:
             x_values, turned = _rising(columns, x_index, x_values, faults)
             if turned and y_values is not None:
                 y_values = y_values[::-1]
-        _check_points(columns, faults)
+        if columns.sound:
+            _check_points(columns, faults)
     if x_values is None or y_values is None or x_unit is None or y_unit is None:
         return None
     if len(problems) > before or not columns.sound:
@@ -188,11 +189,11 @@ def _rising(columns: Columns, index: int, values: Floats, faults: Faults) -> tup
     return (values[::-1] if turned else values), turned
 
 
-def _check_points_and_commas(columns: Columns, x_index: int, y_index: int, faults: Faults) -> None:
+def _check_commas(columns: Columns, x_index: int, y_index: int, faults: Faults) -> None:
     """One column with points and the other with commas: the commas may stand between thousands."""
     texts = {index: "".join(columns.cells[index]) for index in (x_index, y_index)}
     commas = [index for index, text in texts.items() if "," in text and "." not in text]
-    if columns.separator == "," or len(commas) != 1 or not any("." in text for text in texts.values()):
+    if len(commas) != 1 or not any("." in text for text in texts.values()):
         return
     row, cell = next((row, cell) for row, cell in enumerate(columns.cells[commas[0]]) if "," in cell)
     message = f"'{cell.strip()}' has a comma, the numbers of the other column have a point."

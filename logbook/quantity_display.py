@@ -82,7 +82,7 @@ def _number(value: float, u: float | None, unit: str, power: int, sign: str) -> 
     if unit in _DECIBELS or _is_currency(unit):
         shown = _fixed(scaled, 2, sign)
     else:
-        shown = _signed(f"{scaled:{sign}.{6 if unit == 'Hz' else 4}g}")
+        shown = _signed(f"{scaled:{sign}.{7 if unit == 'Hz' else 4}g}")
     return shown if u is None else f"{shown} \u00b1 0"
 
 

@@ -22,7 +22,7 @@ FLOORS: tuple[frozenset[str], ...] = tuple(
         "quantity entry_text",
         "model",
         "fields hardware",
-        "bench revision prediction stage_fields spurs detector rules",
+        "bench revision prediction stage_fields spurs detector rules sweep",
         "findings terms emissions",
         "compare plots",
         "kind",

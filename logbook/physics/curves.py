@@ -54,13 +54,15 @@ def parabola_top(x: Array, y: Array, index: Indices) -> tuple[Array, Array]:
 def find_peak(x: Array, y: Array) -> Peak:
     """The highest sample of a curve (N,), refined by `parabola_top`; x in Hz, y in dB.
 
-    At an edge it is the sample itself and says so. Of samples equally high the first counts. nan where all y are nan or
-    there are none. Source: `parabola_top`.
+    At an edge it is the sample itself and says so. Of samples equally high the first counts, and where it has equals
+    beside it the middle one of them. nan where all y are nan or there are none. Source: `parabola_top`.
     """
     if not np.any(np.isfinite(y)):
         return Peak(np.nan, np.nan, False)
-    index = int(np.nanargmax(y))
-    if index in (0, len(y) - 1):
+    first = int(np.nanargmax(y))
+    last = first + int(np.argmin(np.append(y[first:] == y[first], False))) - 1
+    index = (first + last) // 2
+    if first == 0 or last == len(y) - 1:
         return Peak(float(x[index]), float(y[index]), True)
     top_x, top_y = parabola_top(x, y, np.array([index]))
     return Peak(float(top_x[0]), float(top_y[0]), False)

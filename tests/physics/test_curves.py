@@ -122,7 +122,11 @@ def test_peak_at_an_edge_flat_or_missing() -> None:
     x = np.arange(5.0)
     assert curves.find_peak(x, np.array([0.0, -1, -2, -3, -4])) == (0.0, 0.0, True)
     assert curves.find_peak(x, np.array([-4.0, -3, -2, -1, 0])) == (4.0, 0.0, True)
-    assert curves.find_peak(x, np.array([-4.0, 1, 1, 1, 0]))[1] >= 1.0
+    assert curves.find_peak(x, np.array([-4.0, 1, 1, 1, 0])) == (2.0, 1.0, False)
+    assert curves.find_peak(x, np.array([1.0, 1, 1, -4, 0])) == (1.0, 1.0, True)
+    assert curves.find_peak(x, np.array([-4.0, -3, 1, 1, 1])) == (3.0, 1.0, True)
+    # Two equal samples, falling alike on both sides: the top is half-way, by symmetry.
+    assert curves.find_peak(x, np.array([-9.0, -1, 0, 0, -1])).x == pytest.approx(2.5)
     assert curves.find_peak(x, np.array([-4.0, np.nan, 1, np.nan, 0])) == (2.0, 1.0, False)
     for nothing in (np.full(5, np.nan), np.array([])):
         assert all(map(math.isnan, curves.find_peak(x[: len(nothing)], nothing)[:2]))

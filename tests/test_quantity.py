@@ -358,7 +358,7 @@ def test_no_level_without_an_impedance_or_of_a_ratio() -> None:
         (12346.0, "1", 1200.0, "12300 \u00b1 1200"),
         (-118.4, "dBm", None, "-118.40 dBm"),
         (-0.001, "dB", None, "0.00 dB"),
-        (50.123456e6, "Hz", None, "50.1235 MHz"),
+        (50.123456e6, "Hz", None, "50.12346 MHz"),
         (999_999.96, "Hz", None, "1 MHz"),
         (1.5e-9, "V/rtHz", None, "1.5 nV/\u221aHz"),
         (12.5, "EUR", None, "12.50 EUR"),

@@ -121,6 +121,7 @@ def measured(
         corrections=equal.corrections,
         bound=equal.bound,
         notes=(*read.notes, *equal.notes, *overdue_note(setting)),
+        read_as=read.words,
         repeats=value.repeats,
         noise_ratio=1.0 if bench is None else bench.noise_ratio,
     )
@@ -186,6 +187,7 @@ class _Read:
     unit: str
     parts: dict[Source, float]
     notes: tuple[str, ...] = ()
+    words: str = ""
 
 
 def _in_base(value: Quantity, known: KnownQuantity | None, setting: Setting, place: Place) -> _Read | None:
@@ -221,7 +223,7 @@ def _through_detector(value: Quantity, name: str, setting: Setting, place: Place
         return None
     level, parts, notes = detector.level(value, fresh(place, "detector", "departure from its line"))
     u = None if value.u is None else abs(value.u / detector.fit.slope)
-    return _Read(level, u, "dBm", parts, (f"{value.written} through detector {name}", *notes))
+    return _Read(level, u, "dBm", parts, notes, f"{value.written} through detector {name}")
 
 
 def bears(

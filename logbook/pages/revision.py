@@ -7,6 +7,7 @@ from math import isnan
 from logbook.book import Book
 from logbook.compare.deltas import chain_deltas
 from logbook.compare.next_change import next_change
+from logbook.compare.verdicts import GONE, NEW
 from logbook.findings import Delta
 from logbook.model import BUILT, PLANNED, PREDICTED
 from logbook.pages.links import entry_link
@@ -20,6 +21,7 @@ from logbook.showing.deltas import (
     budget_pieces,
     deltas_table,
     folded,
+    one_sided,
     revision_change,
     shares_pieces,
 )
@@ -93,7 +95,9 @@ def _changes(book: Book, revision: Revision) -> list[Piece]:
     planned = _planned(book, revision)
     pieces: list[Piece] = [Heading(2, f"What changed since {revision.comes_from}")]
     if measured:
-        pieces.append(_side_by_side(measured, predicted, planned))
+        sided = [d for d in measured if d.verdict not in (NEW, GONE)]
+        pieces += [_side_by_side(sided, predicted, planned)] if sided else []
+        pieces += one_sided(measured, chains=len(revision.chains) > 1)
         budgets: list[Piece] = []
         for d in measured:
             if d.budget:

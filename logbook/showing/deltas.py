@@ -5,8 +5,9 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from math import isnan
 
+from logbook.compare.verdicts import GONE, NEW
 from logbook.findings import Agreement, Delta
-from logbook.pieces import Folded, Line, Piece, Span, Table, Text, Verdict
+from logbook.pieces import Folded, Line, Muted, Piece, Span, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_value
 from logbook.showing.words import change, difference_unit, percent, plain, reason, result_words, revision_link
 
@@ -26,6 +27,26 @@ def deltas_table(deltas: Iterable[Delta], caption: str, *, chains: bool = False)
         )
     head = ("quantity", "before", "after", "change", "verdict")
     return Table(head, tuple(rows), caption, frozenset({1, 2, 3}))
+
+
+def deltas_pieces(deltas: Iterable[Delta], caption: str, *, chains: bool = False) -> list[Piece]:
+    """The deltas that have two sides as a table; what was read on one side only is named beneath."""
+    found = list(deltas)
+    sided = [d for d in found if d.verdict not in (NEW, GONE)]
+    pieces: list[Piece] = [deltas_table(sided, caption, chains=chains)] if sided else []
+    return [*pieces, *one_sided(found, chains=chains)]
+
+
+def one_sided(deltas: Iterable[Delta], *, chains: bool = False) -> list[Piece]:
+    """What was read for the first time, and what was not read again, by name."""
+    found, pieces = list(deltas), list[Piece]()
+    for verdict, words in ((NEW, "Read for the first time"), (GONE, "Not read again yet")):
+        names = [
+            result_words(d.quantity, d.at_hz, d.name, d.chain if chains else "") for d in found if d.verdict == verdict
+        ]
+        if names:
+            pieces.append(Text((f"{words}: ", Muted("; ".join(names)), ".")))
+    return pieces
 
 
 def budget_pieces(delta: Delta, k: float) -> list[Piece]:

@@ -97,11 +97,12 @@ def _corrections(results: list[Result]) -> list[Piece]:
     """Each corrected value as a sum that can be followed with a pocket calculator."""
     lines: list[Line] = []
     for result in results:
-        if not result.corrections or result.shown is None:
+        if result.shown is None or not (result.corrections or result.read_as):
             continue
         steps = "".join(f"; {label} {show_delta(amount, 'dB')}" for label, amount in result.corrections)
         words = result_words(result.quantity, result.at_hz, result.name)
         read, value = show_value(result.shown, result.unit), show_value(result.value, result.unit)
+        read = f"{result.read_as}, which is {read}" if result.read_as else read
         lines.append(f"{words}: read {read}{steps}; on equal terms {value}")
     pieces: list[Piece] = [Items(tuple(lines))] if lines else []
     repeats = [r for r in results if r.repeats]

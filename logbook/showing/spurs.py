@@ -8,8 +8,8 @@ from dataclasses import dataclass
 from logbook.pieces import Folded, Line, Muted, Note, Piece, Strong, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_frequency
 from logbook.spurs.candidates import Candidate
-from logbook.spurs.evidence import Trial
 from logbook.spurs.setting import SIGNAL, Setting, SpurSource
+from logbook.spurs.trials import Trial
 
 POSSIBLE, STRUCK = "possible", "struck out"
 

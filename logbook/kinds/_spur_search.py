@@ -14,9 +14,10 @@ from logbook.quantity import Quantity
 from logbook.showing.spur_map import Plan
 from logbook.showing.spurs import Spur
 from logbook.spurs.candidates import candidates
-from logbook.spurs.evidence import INPUT, TUNING, Drop, Move, judged, next_trial
+from logbook.spurs.evidence import INPUT, TUNING, Drop, Move, judged
 from logbook.spurs.planning import Asked, common_crossings, ranked_choices
 from logbook.spurs.setting import SIGNAL, Setting, Spot, SpurSource, at_stage, narrowest, own_sources, spots_of
+from logbook.spurs.trials import next_trial
 
 # Beyond this many sources the products of high order are too many to be worth a list.
 MOST_SOURCES = 12
@@ -37,6 +38,8 @@ class Search:
 def search_of(values: Values, chain: Chain | None, session: Session) -> Search | None:
     """The chain's own sources and the named ones; None with a fault where there are none, or too many."""
     sources = [*own_sources(chain), *_named_sources(values, chain, session)]
+    if not sources and session.broken:
+        return None
     if not sources:
         message = "Nothing is here that could make a spur: no chain, and no 'sources'."
         session.fault(values.start, "no-sources", message, "Name a source, such as {name: clock, frequency: 10 MHz}.")
@@ -121,9 +124,9 @@ def _where(item: Values, search: Search) -> str | None:
         return SIGNAL
     if where in stages:
         return where
-    message = f"'{where}' is no stage of the chain; a spur is seen behind a stage, or at the signal frequency."
-    hint = did_you_mean(where, [SIGNAL, *stages])
-    search.session.fault(item.place("where"), "unknown-stage", message, hint, where)
+    if not search.session.broken:
+        message = f"'{where}' is no stage of the chain; a spur is seen behind a stage, or at the signal frequency."
+        search.session.fault(item.place("where"), "unknown-stage", message, did_you_mean(where, [SIGNAL, *stages]))
     return None
 
 
@@ -166,8 +169,8 @@ def _drops(item: Values, search: Search) -> list[Drop]:
 
 
 def _known(each: Values, source: str, names: Sequence[str], search: Search) -> bool:
-    if source in names:
-        return True
+    if source in names or search.session.broken:
+        return source in names
     message = f"'{source}' is no source of this block, nor one of the chain's own."
     search.session.fault(each.place("source"), "unknown-source", message, did_you_mean(source, names))
     return False

@@ -157,7 +157,7 @@ def _counts(plan: Plan, values: Values, setting: Setting) -> list[Result]:
             None,
             setting,
             place,
-            name=each.name,
+            name=each.key,
             better="lower",
         )
         for each in plan.choices

@@ -1,4 +1,4 @@
-"""What was tried on a spur, what speaks against each candidate, and the next trial that tells the rest apart best."""
+"""What was tried on a spur, and what speaks against each candidate."""
 
 from __future__ import annotations
 
@@ -11,7 +11,6 @@ import numpy as np
 from logbook.physics.constants import Array
 from logbook.physics.experiments import (
     agrees,
-    best_experiment,
     display_move,
     predicted_drop,
     predicted_move,
@@ -19,13 +18,12 @@ from logbook.physics.experiments import (
 )
 from logbook.quantity_display import show_delta, show_frequency
 from logbook.spurs.candidates import Candidate, heard_row, rows_of
-from logbook.spurs.setting import SIGNAL, Setting
+from logbook.spurs.setting import Setting
 
 TUNING, INPUT = "tuning", "input"
 
 # What is told apart where no doubt is stated: a quarter of the step, so that whole orders are.
-_UNSTATED = 0.25
-_DROP_DB, _DROP_RESOLUTION_DB = 10.0, 3.0
+UNSTATED = 0.25
 
 
 @dataclass(frozen=True, slots=True)
@@ -40,7 +38,7 @@ class Move:
     @property
     def within_hz(self) -> float:
         """How far a prediction may be off."""
-        return _UNSTATED * abs(self.by_hz) if self.tolerance_hz is None else self.tolerance_hz
+        return UNSTATED * abs(self.by_hz) if self.tolerance_hz is None else self.tolerance_hz
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,19 +53,7 @@ class Drop:
     @property
     def within_db(self) -> float:
         """How far a prediction may be off."""
-        return _UNSTATED * abs(self.by_db) if self.tolerance_db is None else self.tolerance_db
-
-
-@dataclass(frozen=True, slots=True)
-class Trial:
-    """A trial to come: what to do, and for each outcome that can be told from the others whom it speaks for."""
-
-    words: str
-    outcomes: tuple[tuple[str, tuple[Candidate, ...]], ...]
-
-    def outcome_of(self, candidate: Candidate) -> str:
-        """What a candidate would do in the trial; nothing for one that was struck out before."""
-        return next((words for words, found in self.outcomes if candidate in found), "")
+        return UNSTATED * abs(self.by_db) if self.tolerance_db is None else self.tolerance_db
 
 
 def expected_move(found: Sequence[Candidate], setting: Setting, source: str, by_hz: float) -> Array:
@@ -133,7 +119,7 @@ def _note(
 def _against_move(move: Move, said: float) -> str:
     if move.source == TUNING:
         by, seen = show_frequency(abs(move.by_hz)), show_frequency(abs(move.seen_hz))
-        return f"tuning by {by} would move its tone by {_hz(said)}, not by {seen}"
+        return f"tuning by {by} would move its tone by {hertz(said)}, not by {seen}"
     by, seen = show_delta(move.by_hz, "Hz"), show_delta(move.seen_hz, "Hz")
     if isnan(said):
         return f"it would be heard at every tuning, and moved by {seen}"
@@ -143,97 +129,18 @@ def _against_move(move: Move, said: float) -> str:
 
 
 def _against_drop(drop: Drop, said: float) -> str:
-    would = f"fall by {_db(said)}" if said else "stay as it is"
-    fell = f"rose by {_db(-drop.seen_db)}" if drop.seen_db < 0 else f"fell by {_db(drop.seen_db)}"
+    would = f"fall by {decibels(said)}" if said else "stay as it is"
+    fell = f"rose by {decibels(-drop.seen_db)}" if drop.seen_db < 0 else f"fell by {decibels(drop.seen_db)}"
     seen = fell if abs(drop.seen_db) > drop.within_db else "stayed"
     thing = "the input" if drop.source == INPUT else drop.source
-    return f"with {thing} {_db(drop.by_db)} lower it would {would}; it {seen}"
+    return f"with {thing} {decibels(drop.by_db)} lower it would {would}; it {seen}"
 
 
-def _db(db: float) -> str:
+def decibels(db: float) -> str:
+    """A drop as it is set on an attenuator."""
     return f"{db:.4g} dB"
 
 
-def _hz(hz: float) -> str:
+def hertz(hz: float) -> str:
+    """A frequency without the dust of its sums."""
     return show_frequency(round(hz, 3))
-
-
-def next_trial(
-    found: Sequence[Candidate], setting: Setting, moves: Sequence[Move], drops: Sequence[Drop], tolerance_hz: float
-) -> Trial | None:
-    """The trial that tells the candidates left apart best; None where none does."""
-    left = [each for each in found if not each.struck]
-    if len(left) < 2:
-        return None
-    by, resolution = shift_for(tolerance_hz)
-    # What costs least to try comes first, and is taken where two trials tell as much.
-    trials: list[tuple[str, str, Array, float]] = []
-    if INPUT not in {drop.source for drop in drops}:
-        trials.append(("drop", INPUT, expected_drop(left, setting, INPUT, _DROP_DB), _DROP_RESOLUTION_DB))
-    done = {move.source for move in moves}
-    for name in _movable(setting, done):
-        trials.append(("move", name, expected_move(left, setting, name, by), resolution))
-    choice = best_experiment([each[2] for each in trials], [each[3] for each in trials])
-    if choice is None:
-        return None
-    what, name, said, apart = trials[choice.experiment]
-    return Trial(_what_to_do(what, name, by, setting), _outcomes(left, said, apart, what, name))
-
-
-def shift_for(tolerance_hz: float) -> tuple[float, float]:
-    """A shift and what can be told apart with it (Hz): twice the tolerance, since both readings have it."""
-    if tolerance_hz <= 0:
-        return 1e3, _UNSTATED * 1e3
-    least = max(4.0 * tolerance_hz, 1e3)
-    power = 10.0 ** np.floor(np.log10(least))
-    by = float(next(step * power for step in (1.0, 2.0, 5.0, 10.0) if step * power >= least * (1 - 1e-9)))
-    return by, 2.0 * tolerance_hz
-
-
-def _movable(setting: Setting, done: set[str]) -> list[str]:
-    """What can be shifted and has not been: the tuning, then each source that anybody can move."""
-    tuned = [TUNING] if setting.follows.any() or any(spot.follows for spot in setting.spots) else []
-    names = [*tuned, *(each.name for each in setting.sources if each.movable)]
-    return [name for name in names if name not in done]
-
-
-def _what_to_do(what: str, name: str, by_hz: float, setting: Setting) -> str:
-    if what == "drop":
-        return f"Put {_db(_DROP_DB)} ahead of the input."
-    by = show_frequency(by_hz)
-    if name == TUNING:
-        return f"Tune by {by} and watch how far the spur moves in the pass-band."
-    again = " and tune to the spur again" if setting.display else " and follow the spur with the instrument"
-    thing = "the signal that is fed in" if name == SIGNAL else name
-    return f"Shift {thing} up by {by}{again}."
-
-
-def _outcomes(
-    left: Sequence[Candidate], said: Array, apart: float, what: str, name: str
-) -> tuple[tuple[str, tuple[Candidate, ...]], ...]:
-    order = np.argsort(said, kind="stable")
-    groups: list[list[int]] = []
-    for index in order.tolist():
-        last = said[groups[-1][-1]] if groups else np.nan
-        near = (isnan(said[index]) and isnan(last)) or said[index] - last <= apart
-        if groups and near:
-            groups[-1].append(index)
-        else:
-            groups.append([index])
-    return tuple(
-        (_outcome_words([float(said[i]) for i in group], what, name), tuple(left[i] for i in group)) for group in groups
-    )
-
-
-def _outcome_words(said: list[float], what: str, name: str) -> str:
-    low, high = min(said), max(said)
-    if isnan(low):
-        return "is heard at every tuning"
-    if what == "drop":
-        return f"falls by {_db(low)}" if high else "stays"
-    if name == TUNING:
-        return f"moves by {_hz(low)}" if low == high else f"moves by {_hz(low)} to {_hz(high)}"
-    if not low and not high:
-        return "stays"
-    words = [show_delta(round(each, 3), "Hz") for each in (low, high)]
-    return f"moves by {words[0]}" if words[0] == words[1] else f"moves by {words[0]} to {words[1]}"

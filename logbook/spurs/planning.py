@@ -9,7 +9,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from logbook.physics.mixing import Band, Orders, crossing_ranges, half_if_frequency, image_frequency, product_order
-from logbook.quantity_display import show_frequency
+from logbook.quantity_display import key_frequency, show_frequency
 from logbook.spurs.candidates import Row, ahead_of_mixer, all_products, behind_mixer, one_sign, response_of
 from logbook.spurs.setting import SIGNAL, Setting, Spot, SpurSource, behind, product_words
 
@@ -62,6 +62,11 @@ class Choice:
     def name(self) -> str:
         """The choice in a few words."""
         return f"{show_frequency(self.if_hz)}, oscillator {'above' if self.side == HIGH else 'below'}"
+
+    @property
+    def key(self) -> str:
+        """The choice in the key of a result: `10.7MHz-above`."""
+        return f"{key_frequency(self.if_hz)}-{'above' if self.side == HIGH else 'below'}"
 
     def counts(self, order: int) -> tuple[int, ...]:
         """How many crossings there are of each order, from the first."""

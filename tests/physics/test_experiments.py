@@ -105,3 +105,19 @@ def test_of_equally_many_outcomes_the_more_even_split_is_taken() -> None:
 def test_no_experiment_helps_when_all_predict_the_same() -> None:
     assert experiments.best_experiment([np.array([1.0, 1.0])], [0.5]) is None
     assert experiments.best_experiment([], []) is None
+
+
+def test_a_tone_moves_with_the_harmonic_of_the_oscillator() -> None:
+    """The unit really tuned by 300 Hz: where each product stands beside its target before and after."""
+    first_if, tuned, clock = 10.7 * MHZ, 50.1 * MHZ, 12.288 * MHZ
+    rows = mixing.product_orders(2, 6)
+    for follows in (0.0, 1.0):
+
+        def beside(dial: float, follows: float = follows) -> np.ndarray:
+            target = dial if follows else first_if
+            return mixing.product_frequencies(rows, np.array([dial - first_if, clock])) - target
+
+        expected = np.abs(beside(tuned + 300.0) - beside(tuned))
+        sources = np.array([tuned - first_if, clock])
+        said = experiments.tuning_move(rows, sources, np.array([1.0, 0.0]), np.full(len(rows), follows), 300.0)
+        assert said == pytest.approx(expected, abs=1e-6)

@@ -2,27 +2,41 @@
 
 from __future__ import annotations
 
+import sys
 from collections.abc import Mapping
 from hashlib import sha256
 
+import numpy as np
+
 from logbook.book import Book, SourceFile
-from logbook.model import Entry
-from logbook.pages import revision_path
+from logbook.model import Entry, Parts, Result
+from logbook.pages import block_pieces
+from logbook.pieces import Piece
 from logbook.revision import Revision
 
+# What blocks of these kinds show is marked by what it comes from: to make the pieces of a thousand entries takes too
+# long. Any other kind is marked by its very pieces, which hold what it took from files and from other entries.
+_MARKED = frozenset({"chain", "change", "bench", "reading", "target", "accept", "todo"})
 
-def fingerprints(book: Book, sources: Mapping[str, SourceFile], pages: Mapping[str, str]) -> dict[str, str]:
-    """A fingerprint for each entry and page. `pages` are the generated pages with what they show, as text."""
+
+Pages = Mapping[str, tuple[Piece, ...]]
+
+
+def fingerprints(book: Book, sources: Mapping[str, SourceFile], pages: Pages) -> dict[str, str]:
+    """A fingerprint for each entry and page; `pages` are the pages that the logbook makes, with their pieces."""
+    with np.printoptions(threshold=sys.maxsize):
+        return _fingerprints(book, sources, pages)
+
+
+def _fingerprints(book: Book, sources: Mapping[str, SourceFile], pages: Pages) -> dict[str, str]:
     marks = _Marks(book)
     found = {path: _digest(source.data.decode("utf-8", "replace")) for path, source in sources.items()}
     for index, entry in enumerate(book.entries):
         near = book.entries[max(0, index - 1) : index + 2]
         names = [(e.path, e.title, e.date.isoformat()) for e in near]
         found[entry.path] = _digest(found[entry.path], repr(names), marks.of_entry(entry))
-    for label, revision in book.revisions.items():
-        found[revision_path(label)] = marks.of_revision(revision)
-    for path, shown in pages.items():
-        found[path] = _digest(found.get(path, ""), shown)
+    for path, pieces in pages.items():
+        found[path] = _digest(found.get(path, ""), repr(pieces))
     return found
 
 
@@ -31,6 +45,17 @@ def _digest(*parts: str) -> str:
     for part in parts:
         digest.update(part.encode("utf-8", "surrogatepass") + b"\0")
     return digest.hexdigest()
+
+
+def _of_parts(parts: Parts | None) -> int:
+    # Marks live no longer than the process, so that Python's own hash will do: a tenth of the time of the text.
+    return 0 if parts is None else hash(tuple(parts.items()))
+
+
+def _of_result(result: Result) -> str:
+    read = f"{result.shown!r} {result.corrections} {result.repeats} {result.conditions}"
+    said = f"{result.bound} {result.words} {result.notes}"
+    return f"{result.key} {result.revision} {result.value!r} {_of_parts(result.parts)} {read} {said}"
 
 
 class _Marks:
@@ -46,14 +71,15 @@ class _Marks:
     def _collect(self) -> None:
         """Everything that speaks of an entry's results, by entry."""
         for result in self.book.results:
-            self._results.setdefault(result.entry, []).append(f"{result.key} {result.value!r} {result.u!r}")
+            self._results.setdefault(result.entry, []).append(_of_result(result))
         for delta in self.book.findings.deltas:
             if delta.after_result is not None:
-                said = f"{delta.from_} {delta.delta!r} {delta.u!r} {delta.verdict} {delta.why}"
-                self._results.setdefault(delta.after_result.entry, []).append(said)
+                said = f"{delta.from_} {delta.before!r} {delta.delta!r} {delta.u!r} {delta.verdict} {delta.why}"
+                budget = f"{_of_parts(delta.parts_before)} {_of_parts(delta.parts_after)}"
+                self._results.setdefault(delta.after_result.entry, []).append(f"{said} {budget}")
         for found in self.book.findings.agreement:
-            said = f"{found.key} {found.predicted!r} {found.u_predicted!r} {found.verdict}"
-            self._results.setdefault(found.result.entry, []).append(said)
+            said = f"{found.key} {found.measured!r} {found.u_measured!r} {found.predicted!r} {found.u_predicted!r}"
+            self._results.setdefault(found.result.entry, []).append(f"{said} {found.verdict} {found.why}")
 
     def of_revision(self, revision: Revision | None) -> str:
         """All that a page says of a revision."""
@@ -86,9 +112,9 @@ class _Marks:
     def of_entry(self, entry: Entry) -> str:
         """All that an entry's page says besides its own text."""
         book = self.book
-        benches = sorted(f"{b.name} {b.since}" for b in book.history.benches[entry.path].values())
+        shown = [repr(block_pieces(book, entry, block)) for block in entry.blocks if block.kind not in _MARKED]
         todo = [repr(t) for t in book.findings.todo if entry.path in (t.opened, t.closed)]
         problems = [str(p) for p in book.problems if p.place.file == entry.path] if len(book.problems) else []
         return _digest(
-            self.of_revision(book.history.of(entry)), *self._results.get(entry.path, ()), *benches, *todo, *problems
+            self.of_revision(book.history.of(entry)), *self._results.get(entry.path, ()), *shown, *todo, *problems
         )

@@ -112,8 +112,7 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
 
     def _mark(self, files: Files, sources: dict[str, SourceFile]) -> None:
         """Under `serve --dirty`, rebuild just the pages whose content is not what it was at the last build."""
-        shown = {path: repr(pieces) for path, pieces in self.made.items() if not path.startswith("revisions/")}
-        marks = fingerprints(self.book, sources, shown)
+        marks = fingerprints(self.book, sources, self.made)
         for file in files.documentation_pages():
             mark = marks.get(file.src_uri)
             if mark is not None:

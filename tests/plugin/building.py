@@ -1,4 +1,4 @@
-"""Sites built in this process, most of them with a theme of a few lines: a page takes a hundredth of Material's time."""
+"""Sites built in this process, most of them with a theme of a few lines, which takes a hundredth of Material's time."""
 
 from __future__ import annotations
 

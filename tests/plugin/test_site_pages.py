@@ -81,13 +81,17 @@ def test_an_empty_logbook_is_a_site_that_says_how_to_begin(project: Project) -> 
 
 
 def test_one_entry_without_blocks_is_enough(project: Project) -> None:
-    project.write("2026-01-10-note.md", FRONT.format(title="A note", date="2026-01-10", more="") + "Nothing measured.\n")
+    project.write(
+        "2026-01-10-note.md", FRONT.format(title="A note", date="2026-01-10", more="") + "Nothing measured.\n"
+    )
     project.build()
     assert "Nothing measured." in project.page("2026-01-10-note.html").words
     assert "A note" in project.page("index.html").words
 
 
-ORDINARY = "# About\n\nA [link](2026-01-10-first.md), a table:\n\n| a | b |\n|---|---|\n| 1 | 2 |\n\n```yaml\nx: 1\n```\n"
+ORDINARY = (
+    "# About\n\nA [link](2026-01-10-first.md), a table:\n\n| a | b |\n|---|---|\n| 1 | 2 |\n\n```yaml\nx: 1\n```\n"
+)
 
 
 def test_an_ordinary_page_is_what_it_is_without_the_plugin(project: Project, tmp_path: Path) -> None:

@@ -14,7 +14,7 @@ import numpy.typing as npt
 from logbook.physics.decibels import db_from_amplitude
 from logbook.problems import Problems
 from logbook.traces.text import Faults, is_number, quoted, read_lines, word_column
-from logbook.traces.touchstone_head import Head, Row, Scanner
+from logbook.traces.touchstone_head import Head, Scanner
 from logbook.traces.trace import Trace, frozen
 
 Floats = npt.NDArray[np.float64]
@@ -48,12 +48,12 @@ def read_touchstone(data: bytes, file: str, problems: Problems) -> Touchstone | 
             return None
         head = Scanner(faults).scan(lines)
         ports = _ports(head, file, faults)
-        if not head.rows:
+        if not head.numbers:
             faults.add(len(lines), 1, "empty", "The file holds no data.")
-        if ports is None or not head.rows:
+        if ports is None or not head.numbers:
             return None
         reference = _reference(head, ports, faults)
-        values = _values(head, ports, lines, faults)
+        values = _values(head, ports, faults)
         if values is None or len(faults):
             return None
         return _assembled(file, head, ports, reference, values)
@@ -93,74 +93,69 @@ def _reference(head: Head, ports: int, faults: Faults) -> tuple[float, ...]:
     return tuple(given) if len(given) == ports else tuple(given[:1]) * ports
 
 
-def _values(head: Head, ports: int, lines: list[str], faults: Faults) -> Floats | None:
+def _values(head: Head, ports: int, faults: Faults) -> Floats | None:
     """(N, 1 + 2 pairs): frequency in Hz and the numbers as written; None with a fault."""
     pairs = ports * ports if head.matrix == "full" else ports * (ports + 1) // 2
-    rows = head.rows
-    if ports == 2 and not head.keyed:
-        rows = _without_noise(rows, lines, faults)
     if ports == 2 and head.keyed and head.matrix == "full" and not head.two_port_order:
         message = "The order of the two-port data is not given, so S12 and S21 cannot be told apart."
-        faults.add(rows[0][0], 1, "keyword", message, "Add [Two-Port Data Order] 12_21 or 21_12.")
-    records = _records(rows, 1 + 2 * pairs, ports, faults)
-    numbers = _numbers(rows, lines, faults)
+        faults.add(head.numbers[0], 1, "keyword", message, "Add [Two-Port Data Order] 12_21 or 21_12.")
+    counts = [len(text.split()) for text in head.texts]
+    if ports == 2 and not head.keyed:
+        _drop_noise(head, counts, faults)
+    starts = _records(head.numbers, counts, 1 + 2 * pairs, ports, faults)
+    numbers = _numbers(head, faults)
     if numbers is None or len(faults):
         return None
-    values = numbers.reshape(len(records), 1 + 2 * pairs)
+    values = numbers.reshape(len(starts), 1 + 2 * pairs)
     with np.errstate(over="ignore"):
         values[:, 0] *= head.factor
-    _check_frequencies(values[:, 0], records, head, faults)
+    _check_frequencies(values[:, 0], starts, head, faults)
     return values
 
 
-def _without_noise(rows: list[Row], lines: list[str], faults: Faults) -> list[Row]:
-    """The rows ahead of a 1.1 file's noise data, which begin where the frequency does not rise (1.1, noise data)."""
-    for index in range(1, len(rows)):
-        words = rows[index][1]
-        if len(words) == _NOISE_NUMBERS and _as_float(words[0]) <= _as_float(_frequency_before(rows, index)):
-            _check_noise(rows[index:], lines, faults)
-            return rows[:index]
-    return rows
+def _drop_noise(head: Head, counts: list[int], faults: Faults) -> None:
+    """Leave out a 1.1 file's noise data, which begin where the frequency does not rise (1.1, noise data)."""
+    above = 0
+    for index, count in enumerate(counts):
+        if index and count == _NOISE_NUMBERS and _frequency(head.texts[index]) <= _frequency(head.texts[above]):
+            break
+        if count % 2:
+            above = index
+    else:
+        return
+    for number, text, count in zip(head.numbers[index:], head.texts[index:], counts[index:], strict=True):
+        if count != _NOISE_NUMBERS:
+            message = f"This line has {count} numbers, and the frequency has fallen: noise data have 5."
+            faults.add(number, word_column(text, 0), "order", message, "Frequencies must rise; noise data stand last.")
+    del head.numbers[index:], head.texts[index:], counts[index:]
 
 
-def _frequency_before(rows: list[Row], index: int) -> str:
-    """The first word of the nearest line above with an odd number of words, which is where a frequency stands."""
-    return next((words[0] for _, words in reversed(rows[:index]) if len(words) % 2), "")
+def _frequency(text: str) -> float:
+    word = text.split(maxsplit=1)[0]
+    return float(word) if is_number(word) else np.nan
 
 
-def _as_float(text: str) -> float:
-    return float(text) if is_number(text) else np.nan
-
-
-def _check_noise(rows: list[Row], lines: list[str], faults: Faults) -> None:
-    for number, words in rows:
-        if len(words) != _NOISE_NUMBERS:
-            message = f"This line has {len(words)} numbers, and the frequency has fallen: noise data have 5."
-            hint = "Frequencies must rise; noise data stand last."
-            faults.add(number, word_column(lines[number - 1], 0), "order", message, hint)
-
-
-def _records(rows: list[Row], size: int, ports: int, faults: Faults) -> list[int]:
+def _records(numbers: list[int], counts: list[int], size: int, ports: int, faults: Faults) -> list[int]:
     """The lines on which the data of each frequency begin; faults where a frequency has too few numbers or too many.
 
     A frequency and its pairs are an odd number of words, pairs that go on are an even one.
     """
-    if all(len(words) == size for _, words in rows):
-        return [number for number, _ in rows]
+    if all(count == size for count in counts):
+        return numbers
     starts: list[int] = []
     have = size
     lost = False
-    for number, words in rows:
-        if len(words) % 2:
+    for number, count in zip(numbers, counts, strict=True):
+        if count % 2:
             if have < size and not lost:
                 _miscounted(starts[-1], have, size, ports, faults)
             starts.append(number)
-            have, lost = len(words), False
+            have, lost = count, False
         else:
-            have += len(words)
+            have += count
         if not lost and (have > size or not starts):
             lost = True
-            _miscounted(number, have if len(words) % 2 else len(words), size, ports, faults)
+            _miscounted(number, have if count % 2 else count, size, ports, faults)
     if have < size and not lost:
         _miscounted(starts[-1], have, size, ports, faults)
     return starts
@@ -172,24 +167,22 @@ def _miscounted(line: int, have: int, size: int, ports: int, faults: Faults) -> 
     faults.add(line, 1, "fields", message.replace("1 ports", "1 port"), hint)
 
 
-def _numbers(rows: list[Row], lines: list[str], faults: Faults) -> Floats | None:
+def _numbers(head: Head, faults: Faults) -> Floats | None:
     """All numbers in a row; None with a fault for each word that is no finite number."""
+    text = " ".join(head.texts)
     try:
-        values = np.array([float(word) for _, words in rows for word in words])
+        values = np.array(list(map(float, text.split())))
     except ValueError:
         values = np.array([np.nan])
     # What Python takes for a number and nobody else: 1_000, and digits of other scripts.
-    text = "".join([lines[number - 1] for number, _ in rows])
     if np.all(np.abs(values) < np.inf) and text.isascii() and "_" not in text:
         return values
-    before = len(faults)
-    for number, words in rows:
-        for index, word in enumerate(words):
+    for number, line in zip(head.numbers, head.texts, strict=True):
+        for index, word in enumerate(line.split()):
             if not is_number(word) or not np.isfinite(float(word)):
                 hint = "Write the decimal point as a point." if "," in word else ""
-                column = word_column(lines[number - 1], index)
-                faults.add(number, column, "number", f"{quoted(word)} is not a finite number.", hint)
-    return values if len(faults) == before else None
+                faults.add(number, word_column(line, index), "number", f"{quoted(word)} is not a finite number.", hint)
+    return None
 
 
 def _check_frequencies(frequency_hz: Floats, starts: list[int], head: Head, faults: Faults) -> None:

@@ -9,9 +9,6 @@ from dataclasses import dataclass, field
 from logbook.problems import did_you_mean
 from logbook.traces.text import Faults, is_number, quoted, word_column
 
-# A line of numbers: its line in the file, and its words.
-Row = tuple[int, list[str]]
-
 _UNITS = {"hz": 1.0, "khz": 1e3, "mhz": 1e6, "ghz": 1e9}
 _PARAMETERS = ("s", "y", "z", "g", "h")
 _FORMS = ("ri", "ma", "db")
@@ -32,7 +29,9 @@ class Head:
     matrix: str = "full"
     frequencies: tuple[int, int] | None = None
     """How many there should be, and the line that says so."""
-    rows: list[Row] = field(default_factory=list)
+    numbers: list[int] = field(default_factory=list)
+    """The lines that hold the network data, and beneath what they hold, without comments."""
+    texts: list[str] = field(default_factory=list)
 
 
 class Scanner:
@@ -62,17 +61,16 @@ class Scanner:
         }
 
     def scan(self, lines: list[str]) -> Head:
-        """The head, and the rows of numbers of the network data."""
-        rows = self.head.rows
+        """The head, and the lines of the network data."""
         for number, line in enumerate(lines, 1):
-            text = line.partition("!")[0]
-            words = text.split()
-            if not words:
+            text = line.partition("!")[0] if "!" in line else line
+            if not text or text.isspace():
                 continue
-            if text.lstrip()[0] in "#[":
+            if ("#" in text or "[" in text) and text.lstrip()[0] in "#[":
                 self._special(number, text)
             elif self._section == "data":
-                rows.append((number, words))
+                self.head.numbers.append(number)
+                self.head.texts.append(text)
             else:
                 self._outside(number, text)
         return self.head
@@ -178,7 +176,7 @@ class Scanner:
         if self._option_seen:
             return
         self._option_seen = True
-        if self.head.rows:
+        if self.head.numbers:
             message = "The option line stands behind the first data."
             self._faults.add(number, word_column(text, 0), "option", message, "Put it ahead of them.")
         spaced = text.replace("#", " ", 1)

@@ -181,8 +181,7 @@ def quantity(
         try:
             found = read_quantity(scalar.text, dimension, asked.what.replace("_", " "))
         except QuantityError as error:
-            place = Place(scalar.place.file, scalar.place.line, scalar.place.column + error.offset)
-            asked.fault(place, error.code, error.message, error.hint)
+            asked.fault(scalar.at(error.offset), error.code, error.message, error.hint)
             return None
         wrong = (positive and found.value <= 0) or (not_negative and found.value < 0)
         if wrong:
@@ -213,8 +212,7 @@ def _repeated(node: YamlSequence, dimension: str | tuple[str, ...], asked: Asked
             if not has_level(read_quantity(scalar.text, dimension, asked.what.replace("_", " ")), dimension):
                 _no_level(scalar, asked)
         except QuantityError as error:
-            place = Place(scalar.place.file, scalar.place.line, scalar.place.column + error.offset)
-            asked.fault(place, error.code, error.message, error.hint)
+            asked.fault(scalar.at(error.offset), error.code, error.message, error.hint)
         texts.append(scalar.text)
     if len(asked.problems) > before:
         return None

@@ -27,6 +27,13 @@ class Scalar:
 
     text: str
     place: Place
+    in_one_line: bool = True
+
+    def at(self, offset: int) -> Place:
+        """Where a character of the text stands in the file; its start where the text is folded or escaped."""
+        if not self.in_one_line:
+            return self.place
+        return Place(self.place.file, self.place.line, self.place.column + offset)
 
 
 @dataclass(frozen=True, slots=True)
@@ -161,16 +168,19 @@ class _Reader:
         return Sequence(tuple(items), place)
 
     def _scalar(self, event: Any) -> Scalar:
-        mark = event.start_mark
+        mark, end = event.start_mark, event.end_mark
         column = mark.column + self._column
-        if event.style in ("'", '"') and event.end_mark.line == mark.line:
+        width = end.column - mark.column
+        if event.style in ("'", '"') and end.line == mark.line:
             # The text's own place, so that a fault within it is shown where it stands.
             column += 1
+            width -= 2
         place = Place(self._file, self._first_line + mark.line, column)
         if event.anchor is not None or event.tag is not None:
             self._refuse_extras(event, self._place(mark))
         text: str = event.value
-        return Scalar(text.replace(_STAND_IN, ">") if self._restore else text, place)
+        as_written = end.line == mark.line and width == len(text)
+        return Scalar(text.replace(_STAND_IN, ">") if self._restore else text, place, as_written)
 
     def _mapping(self, place: Place, depth: int) -> Mapping:
         pairs: dict[str, tuple[Scalar, Node]] = {}

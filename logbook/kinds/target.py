@@ -4,17 +4,24 @@ from __future__ import annotations
 
 import re
 
-from logbook.fields import Field, quantity, text
+from logbook.fields import Asked, Field, quantity, text
 from logbook.findings import Target
 from logbook.kind import Kind, Outcome, Session, View
 from logbook.model import Block, Values, result_key
 from logbook.pieces import Piece
-from logbook.problems import Place, did_you_mean
+from logbook.problems import did_you_mean
 from logbook.quantities import KNOWN, known_quantity
 from logbook.quantity import Quantity, QuantityError, has_level, level_dbm, read_quantity
 from logbook.showing.targets import targets_table
 from logbook.stage_fields import LEVEL
 from logbook.units import DIMENSIONS
+from logbook.yaml_nodes import Node, Scalar
+
+
+def _limit(node: Node, asked: Asked) -> Scalar | None:
+    """The text with its place, so that a fault within it is shown where it stands."""
+    return node if text()(node, asked) is not None and isinstance(node, Scalar) else None
+
 
 FIELDS = (
     Field("chain", text()),
@@ -23,7 +30,7 @@ FIELDS = (
     Field("at", quantity("frequency", positive=True)),
     Field("rbw", quantity("frequency", positive=True)),
     Field("source_temperature", quantity("noise_temperature", positive=True)),
-    Field("limit", text(), required=True, help="Such as '<= -125 dBm', '>= 6 dB' or '40 dB .. 44 dB'."),
+    Field("limit", _limit, required=True, help="Such as '<= -125 dBm', '>= 6 dB' or '40 dB .. 44 dB'."),
     Field("why", text()),
 )
 
@@ -51,7 +58,7 @@ def declare(values: Values, session: Session) -> Target | None:
     dimension = LEVEL if dimension == "level" else dimension
     described = session.chains.get(chain or "")
     impedance = 50.0 if described is None else described.impedance_ohm
-    limits = _limits(values["limit"], dimension, impedance, values.place("limit"), session)
+    limits = _limits(values["limit"], dimension, impedance, session)
     if chain is None or limits is None:
         return None
     low, high, unit = limits
@@ -66,7 +73,7 @@ def declare(values: Values, session: Session) -> Target | None:
         low=low,
         high=high,
         unit=unit,
-        written=values["limit"],
+        written=values["limit"].text.strip(),
         why=values.get("why", ""),
         entry=session.entry.path,
         place=values.start,
@@ -75,8 +82,9 @@ def declare(values: Values, session: Session) -> Target | None:
 
 
 def _limits(
-    written: str, dimension: str | tuple[str, ...], impedance_ohm: float, place: Place, session: Session
+    scalar: Scalar, dimension: str | tuple[str, ...], impedance_ohm: float, session: Session
 ) -> tuple[float | None, float | None, str] | None:
+    written, place = scalar.text, scalar.place
     found = _LIMIT.fullmatch(written)
     if found is None:
         hint = "Such as '<= -125 dBm', '>= 6 dB' or '40 dB .. 44 dB'."
@@ -93,8 +101,7 @@ def _limits(
                 raise QuantityError("sign", message)
             given.append(_in_base(limit, dimension, impedance_ohm))
     except QuantityError as error:
-        there = Place(place.file, place.line, place.column + offset + error.offset)
-        session.fault(there, error.code, error.message, error.hint)
+        session.fault(scalar.at(offset + error.offset), error.code, error.message, error.hint)
         return None
     (first, unit), (last, other) = given[0], given[-1]
     if found["sign"]:

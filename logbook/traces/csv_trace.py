@@ -10,7 +10,7 @@ import numpy.typing as npt
 
 from logbook.problems import CAUTION, Place, Problems
 from logbook.traces.headers import split_head
-from logbook.traces.layout import Layout, Line, field_column, find_layout, split_fields
+from logbook.traces.layout import Layout, Lines, field_column, find_layout, split_fields
 from logbook.traces.text import Faults, is_number, quoted, read_lines
 
 Floats = npt.NDArray[np.float64]
@@ -32,7 +32,7 @@ class Columns:
     head_line: int
     separator: str
     cells: tuple[Sequence[str], ...]
-    rows: Sequence[Line] = field(repr=False)
+    rows: Lines = field(repr=False)
     sound: bool = True
 
     def label(self, index: int) -> str:
@@ -42,8 +42,7 @@ class Columns:
 
     def place(self, row: int, index: int) -> tuple[int, int]:
         """Line and column in the file of a cell."""
-        number, line = self.rows[row]
-        return number, field_column(line, self.separator, index)
+        return self.rows.numbers[row], field_column(self.rows.texts[row], self.separator, index)
 
 
 def read_table(data: bytes, file: str, problems: Problems) -> Columns | None:
@@ -77,29 +76,30 @@ def _decimal_commas_between_commas(layout: Layout, faults: Faults) -> bool:
         return False
     message = f"This line has {layout.width} fields, the one that heads the columns {layout.head_width}."
     hint = "Decimal commas between commas cannot be told apart: save the file with semicolons."
-    faults.add(layout.rows[0][0], 1, "fields", message, hint)
+    faults.add(layout.rows.numbers[0], 1, "fields", message, hint)
     return True
 
 
-def _cells(layout: Layout, faults: Faults) -> tuple[Sequence[Line], tuple[Sequence[str], ...]]:
+def _cells(layout: Layout, faults: Faults) -> tuple[Lines, tuple[Sequence[str], ...]]:
     rows, separator, width = layout.rows, layout.separator, layout.width
-    texts = [line for _, line in rows]
+    texts = rows.texts
     raw = texts[0].count(separator) + 1
     joined = separator.join(texts)
     if separator != " " and '"' not in joined and raw >= width and all(t.count(separator) == raw - 1 for t in texts):
         fields = joined.split(separator)
         if not any(any(map(str.strip, fields[k::raw])) for k in range(width, raw)):
             return rows, tuple(fields[k::raw] for k in range(width))
-    kept: list[Line] = []
+    kept = Lines([], [])
     split: list[list[str]] = []
-    for number, line in rows:
+    for number, line in zip(*rows, strict=True):
         found = split_fields(line, separator)
         if len(found) < width or any(found[width:]):
             extra = min(len(found), width)
             message = f"This line has {len(found)} field{'s' if len(found) != 1 else ''}, the table {width}."
             faults.add(number, field_column(line, separator, extra), "fields", message)
         else:
-            kept.append((number, line))
+            kept.numbers.append(number)
+            kept.texts.append(line)
             split.append(found[:width])
     return kept, tuple([row[k] for row in split] for k in range(width))
 

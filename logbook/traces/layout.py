@@ -4,18 +4,32 @@ from __future__ import annotations
 
 import csv
 import re
+from bisect import bisect_left
 from collections import Counter
 from dataclasses import dataclass
+from itertools import compress
+from typing import NamedTuple
 
 from logbook.traces.headers import split_head, unit_symbol
 from logbook.traces.text import is_number, word_column
 
-# A line of a file: its number, and its text.
-Line = tuple[int, str]
+
+class Lines(NamedTuple):
+    """Some of a file's lines: their numbers, and their texts."""
+
+    numbers: list[int]
+    texts: list[str]
+
+    def part(self, start: int, stop: int | None = None) -> Lines:
+        """From one index to before another."""
+        return Lines(self.numbers[start:stop], self.texts[start:stop])
+
 
 # In the order in which they are believed where several would do. A space stands for any run of spaces.
 _SEPARATORS = ("\t", ";", ",", " ")
 _COMMENTS = ("#", "!", "%", "//", "'", ";")
+# How most lines begin; a look at one letter spares the rest of the questions.
+_DIGITS = frozenset("0123456789.")
 _END = re.compile(r"\W*(?:END|EOF)\b", re.IGNORECASE)
 _AXIS_UNIT = re.compile(r"([xy])[ _-]*(?:axis)?[ _-]*units?", re.IGNORECASE)
 _SAMPLE = 200
@@ -31,7 +45,7 @@ class Layout:
 
     separator: str
     width: int
-    rows: list[Line]
+    rows: Lines
     heads: tuple[str, ...]
     head_line: int
     head_width: int
@@ -78,35 +92,44 @@ def reads_as_number(field: str) -> bool:
 
 def find_layout(lines: list[str]) -> Layout | None:
     """The layout of a file's lines; None where no line holds two numbers."""
-    written = [(number, line) for number, line in enumerate(lines, 1) if line and not line.isspace()]
-    content = [entry for entry in written if not entry[1].lstrip().startswith(_COMMENTS)]
-    sample = content if len(content) <= 2 * _SAMPLE else content[len(content) // 2 :: len(content) // _SAMPLE]
-    separator, pattern = _separator(sample)
+    written = _kept(Lines(list(range(1, len(lines) + 1)), lines), [bool(x) and not x.isspace() for x in lines])
+    content = _kept(written, [x[0] in _DIGITS or not x.lstrip().startswith(_COMMENTS) for x in written.texts])
+    separator, pattern = _separator(_sample(content.texts))
     if not pattern:
         # Where most lines are at fault the first few may tell.
-        separator, pattern = _separator(content[: 2 * _SAMPLE])
-    if not pattern:
-        return None
-    start = _start(content, separator, pattern)
+        separator, pattern = _separator(content.texts[: 2 * _SAMPLE])
+    start = _start(content.texts, separator, pattern) if pattern else None
     if start is None:
         return None
-    rows = content[start:]
-    stop = next((i for i, (_, line) in enumerate(rows) if line.lstrip()[0] in "Ee[" and _END.match(line)), len(rows))
-    after = rows[stop + 1][0] if stop + 1 < len(rows) else 0
-    rows = rows[:stop]
-    width = _width(rows, separator, len(pattern))
-    above = [entry for entry in written if entry[0] < rows[0][0]]
+    rows = content.part(start)
+    ends = (i for i, x in enumerate(rows.texts) if i and x[0] not in _DIGITS and _END.match(x))
+    stop = next(ends, len(rows.texts))
+    after = rows.numbers[stop + 1] if stop + 1 < len(rows.texts) else 0
+    rows = rows.part(0, stop)
+    width = _width(rows.texts, separator, len(pattern))
+    above = written.part(0, bisect_left(written.numbers, rows.numbers[0]))
     heads, head_line, head_width = _heads(above, separator, width)
     return Layout(separator, width, rows, heads, head_line, head_width, after)
 
 
-def _separator(sample: list[Line]) -> tuple[str, tuple[bool, ...]]:
+def _kept(lines: Lines, keep: list[bool]) -> Lines:
+    if all(keep):
+        return lines
+    return Lines(list(compress(lines.numbers, keep)), list(compress(lines.texts, keep)))
+
+
+def _sample(texts: list[str]) -> list[str]:
+    """All lines of a short file, some of the lower half of a long one: there the preamble has ended."""
+    return texts if len(texts) <= 2 * _SAMPLE else texts[len(texts) // 2 :: len(texts) // _SAMPLE]
+
+
+def _separator(sample: list[str]) -> tuple[str, tuple[bool, ...]]:
     """The sign that makes most lines lines of numbers, and which fields are numbers in most of these lines."""
     best: tuple[tuple[int, int], str, tuple[bool, ...]] = ((0, 0), "", ())
     for separator in _SEPARATORS:
         patterns: Counter[tuple[bool, ...]] = Counter()
         whole = 0
-        for _, line in sample:
+        for line in sample:
             fields = split_fields(line, separator)
             pattern = tuple(reads_as_number(field) for field in fields)
             if sum(pattern) >= 2:
@@ -117,12 +140,12 @@ def _separator(sample: list[Line]) -> tuple[str, tuple[bool, ...]]:
     return best[1], best[2]
 
 
-def _start(content: list[Line], separator: str, pattern: tuple[bool, ...]) -> int | None:
+def _start(content: list[str], separator: str, pattern: tuple[bool, ...]) -> int | None:
     """The first row of the table: the first of the usual pattern, and those above that begin with a number too."""
     first = pattern.index(True)
 
     def patterned(index: int) -> tuple[bool, ...]:
-        return tuple(reads_as_number(field) for field in split_fields(content[index][1], separator))
+        return tuple(reads_as_number(field) for field in split_fields(content[index], separator))
 
     start = next((index for index in range(len(content)) if patterned(index) == pattern), None)
     while start:
@@ -133,12 +156,12 @@ def _start(content: list[Line], separator: str, pattern: tuple[bool, ...]) -> in
     return start
 
 
-def _width(rows: list[Line], separator: str, raw: int) -> int:
+def _width(rows: list[str], separator: str, raw: int) -> int:
     """The fields of a row, but for those at the end that a trailing separator leaves empty in every row."""
     if separator == " ":
         return raw
     width = raw
-    while width > 2 and all(_is_empty_at(line, separator, width - 1) for _, line in rows):
+    while width > 2 and all(_is_empty_at(line, separator, width - 1) for line in rows):
         width -= 1
     return width
 
@@ -150,24 +173,22 @@ def _is_empty_at(line: str, separator: str, index: int) -> bool:
     return signs < index or not any(split_fields(line, separator)[index:])
 
 
-def _heads(above: list[Line], separator: str, width: int) -> tuple[tuple[str, ...], int, int]:
+def _heads(above: Lines, separator: str, width: int) -> tuple[tuple[str, ...], int, int]:
     """The texts above the columns, their line, and how many fields the line right above the numbers has."""
-    plain = [entry for entry in above if not entry[1].lstrip().startswith(_COMMENTS)]
-    near = plain[-1:] + [entry for entry in above[-_HEADS_LOOKED_AT:][::-1] if entry not in plain]
+    written = list(zip(*above, strict=True))
+    plain = [entry for entry in written if not entry[1].lstrip().startswith(_COMMENTS)]
+    near = plain[-1:] + [entry for entry in written[-_HEADS_LOOKED_AT:][::-1] if entry not in plain]
     found = [(number, heads) for number, line in near if (heads := _as_heads(line, separator, width))]
-    head_width = len(split_fields(plain[-1][1], separator)) if plain and not _has_number(plain[-1][1], separator) else 0
+    last = split_fields(plain[-1][1], separator) if plain else []
+    head_width = 0 if any(map(reads_as_number, last)) else len(last)
     if not found:
-        return _units_of_axes(plain, separator, width), 0, head_width
+        return _units_of_axes([line for _, line in plain], separator, width), 0, head_width
     number, heads = next((one for one in found if any(split_head(head)[1] for head in one[1])), found[0])
-    if plain and number == plain[-1][0] and len(plain) > 1 and all(unit_symbol(h) for h in heads if h):
+    if len(plain) > 1 and number == plain[-1][0] and all(unit_symbol(head) for head in heads if head):
         names = _as_heads(plain[-2][1], separator, width)
         if names:
-            return (
-                tuple(f"{n} ({unit_symbol(u)})" if u else n for n, u in zip(names, heads, strict=True)),
-                number,
-                width,
-            )
-    return heads, number, width
+            heads = tuple(f"{n} ({unit_symbol(u)})" if u else n for n, u in zip(names, heads, strict=True))
+    return heads, number, head_width
 
 
 def _as_heads(line: str, separator: str, width: int) -> tuple[str, ...]:
@@ -181,14 +202,10 @@ def _as_heads(line: str, separator: str, width: int) -> tuple[str, ...]:
     return ()
 
 
-def _has_number(line: str, separator: str) -> bool:
-    return any(reads_as_number(field) for field in split_fields(line, separator))
-
-
-def _units_of_axes(plain: list[Line], separator: str, width: int) -> tuple[str, ...]:
+def _units_of_axes(plain: list[str], separator: str, width: int) -> tuple[str, ...]:
     """Heads made of lines such as `x-Unit;Hz`, which some instruments write ahead of numbers without a head."""
     units = {}
-    for _, line in plain:
+    for line in plain:
         fields = split_fields(line, separator)
         match = _AXIS_UNIT.fullmatch(fields[0].rstrip(":")) if len(fields) > 1 else None
         if match:

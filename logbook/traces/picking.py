@@ -179,7 +179,7 @@ def _rising(columns: Columns, index: int, values: Floats, faults: Faults) -> tup
     wrong = np.flatnonzero(steps >= 0 if turned else steps <= 0)
     for row in map(int, wrong):
         cell = columns.cells[index][row + 1].strip()
-        above = columns.rows[row][0]
+        above = columns.rows.numbers[row]
         if steps[row] == 0:
             message, hint = f"'{cell}' stands on line {above} already.", "Each x may stand once."
         else:
@@ -201,8 +201,8 @@ def _check_commas(columns: Columns, x_index: int, y_index: int, faults: Faults) 
 
 
 def _check_points(columns: Columns, faults: Faults) -> None:
-    points = len(columns.rows)
+    points = len(columns.rows.numbers)
     if points < FEWEST_POINTS:
-        line = columns.rows[-1][0] if points else 1
+        line = columns.rows.numbers[-1] if points else 1
         message = f"The trace has {points} point{'s' if points != 1 else ''}."
         faults.add(line, 1, "points", message, f"A trace needs {FEWEST_POINTS} at least.")

@@ -117,6 +117,7 @@ class Chain:
     place: Place
     level: Parameter | None = None
     strongest: Parameter | None = None
+    weakest: Parameter | None = None
     bandwidth_hz: Parameter | None = None
     impedance_ohm: float = 50.0
     source_temperature_k: Parameter | None = None

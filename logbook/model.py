@@ -138,7 +138,8 @@ class Result:
     """One number with its unit, doubt, conditions and origin.
 
     `value` is on equal terms and in base or dB units, nan when not known; `words` then says why. `shown` is what was
-    read (`read_as` how, where it was no level) and `corrections` lead from it to `value`, in order. `bound` is "upper" when only an upper bound is known.
+    read (`read_as` how, where it was no level) and `corrections` lead from it to `value`, in order. `bound` is "upper"
+    when only an upper bound is known.
     """
 
     quantity: str

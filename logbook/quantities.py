@@ -49,6 +49,8 @@ _ROWS: tuple[tuple[str, str, Better, float, Side, bool], ...] = (
     ("range_left", "ratio", "higher", 0.2, "none", False),
     ("setting", "ratio", "neither", 0.2, "none", False),
     ("headroom", "ratio", "higher", 0.5, "none", False),
+    ("headroom_strongest", "ratio", "higher", 0.5, "none", False),
+    ("snr_weakest", "ratio", "higher", 0.5, "none", False),
     ("slope", "slope", "neither", 0.01, "none", False),
     ("intercept", "level", "neither", 0.5, "drive", False),
     ("conformance_error", "ratio", "lower", 0.1, "none", False),

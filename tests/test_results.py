@@ -66,6 +66,7 @@ def whole() -> list[SourceFile]:
             ("target", TARGET),
             ("reading", READING % "-98.0(2) dBm"),
             ("todo", "- {id: relay, what: replace the relay}\n"),
+            ("parts", "- {item: relay, quantity: 2, price: 1.50 EUR}\n"),
         ),
         entry("2026-02-01", "revision: B\nstate: planned\n", ("change", what_if)),
         entry("2026-03-01", "revision: B\n", ("change", "chain: rx\nas_planned: true\n")),

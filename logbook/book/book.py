@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 from pathlib import Path
 
 from logbook.book.calculating import Calculated, calculate
+from logbook.book.checks import check_chains
 from logbook.book.comparing import compare_all
 from logbook.book.consequences import drop_consequences
 from logbook.book.history import History, read_history
@@ -115,6 +116,7 @@ def make_book(sources: Iterable[SourceFile], folder: Path | None, settings: Sett
     history = read_history(entries, kinds, problems, reader, predicted)
     calculated = calculate(history, kinds, problems, reader, predicted)
     rules = Rules(settings.coverage, settings.matters)
+    check_chains(history.revisions.values(), predicted, problems)
     findings = compare_all(history, calculated.results, predicted, rules, problems)
     drop_consequences(files.values(), problems)
     return Book(settings, files, history, calculated, findings, problems, predicted)

@@ -77,7 +77,7 @@ def _doubts(chain: Chain, terms: Terms) -> list[tuple[int, str, Parameter]]:
         for name, parameter in stage.parameters.items()
         if parameter.u and name not in ("bandwidth", "max_input")
     ]
-    whole = [("level", chain.level), ("snr", chain.snr_db)]
+    whole = [("level", chain.level), ("strongest", chain.strongest), ("weakest", chain.weakest), ("snr", chain.snr_db)]
     if terms.bandwidth_hz is None:
         whole.append(("bandwidth", chain.bandwidth_hz))
     if terms.source_temperature_k is None:

@@ -25,6 +25,8 @@ TOTAL_UNITS = {
     "sfdr": "dB",
     "sensitivity": "dBm",
     "headroom": "dB",
+    "headroom_strongest": "dB",
+    "snr_weakest": "dB",
     "setting": "dB",
     "range_left": "dB",
 }

@@ -87,7 +87,7 @@ def _nodes(
     level = chain.level.value if chain.level is not None else np.nan
     bandwidth = terms.bandwidth_hz or (chain.bandwidth_hz.value if chain.bandwidth_hz is not None else np.nan)
     noise = done.noise_dbm_per_hz[0] + 10 * np.log10(bandwidth)
-    room = headroom(copies, stages, done)[0]
+    room = headroom(stages, done, copies.scalar("level", chain.level))[0]
     image = np.asarray(stages.image)[0]
     with np.errstate(invalid="ignore", divide="ignore"):
         factor = 1 + np.asarray(stages.own_temperature_k)[0] / T0 + image

@@ -29,8 +29,12 @@ class Totals:
     def all(self) -> dict[str, Estimate]:
         """Every total that applies to the chain."""
         found = {**self._noise(), **self._linearity()}
-        if self.copies.chain.level is not None:
-            found["headroom"] = self._headroom()
+        chain = self.copies.chain
+        if chain.level is not None:
+            found["headroom"] = self._headroom("headroom", self.copies.scalar("level", chain.level))
+        if chain.strongest is not None:
+            strongest = self.copies.scalar("strongest", chain.strongest)
+            found["headroom_strongest"] = self._headroom("headroom_strongest", strongest)
         if self.wanted is not None:
             found["setting"] = self.copies.estimate("setting", self.wanted)
             found["range_left"] = self.copies.estimate("range_left", self.top - self.wanted)
@@ -52,6 +56,8 @@ class Totals:
             "noise_density": copies.estimate("noise_density", self.density, why or no_gain),
             "output_noise": copies.estimate("output_noise", floor + self.gain, wide),
         }
+        if chain.weakest is not None:
+            found["snr_weakest"] = copies.estimate("snr_weakest", copies.scalar("weakest", chain.weakest) - floor, wide)
         if chain.snr_db is not None:
             found["sensitivity"] = copies.estimate("sensitivity", floor + copies.scalar("snr", chain.snr_db), wide)
         iip3 = self.done.iip3_dbm[..., -1]
@@ -74,18 +80,17 @@ class Totals:
         found["op1db"] = copies.estimate("op1db", point + self.gain - 1, words)
         return found
 
-    def _headroom(self) -> Estimate:
-        room = headroom(self.copies, self.stages, self.done)
-        return self.copies.estimate("headroom", room.min(axis=-1), "no stage gives a compression point")
+    def _headroom(self, name: str, level: Array) -> Estimate:
+        room = headroom(self.stages, self.done, level)
+        return self.copies.estimate(name, room.min(axis=-1), "no stage gives a compression point")
 
 
 def _no_stage_gives(order: str) -> str:
     return f"no stage gives a {order} intercept"
 
 
-def headroom(copies: Copies, stages: Stages, done: Cascade) -> Array:
+def headroom(stages: Stages, done: Cascade, level: Array) -> Array:
     """Compression point minus level, at each stage's input, in dB; infinite where the stage gives none."""
-    level = copies.scalar("level", copies.chain.level)
     ahead = done.gain_db - stages.gain_db
     room: Array = np.asarray(stages.ip1db_dbm) - ahead - level[:, None]
     return room

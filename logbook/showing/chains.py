@@ -28,6 +28,7 @@ from logbook.prediction import Prediction, Terms
 from logbook.quantity_display import show_frequency, show_value
 from logbook.showing.cautions import power_caution
 from logbook.showing.deltas import deltas_table
+from logbook.showing.level_check import level_check
 from logbook.showing.plans import plan_pieces
 from logbook.showing.words import decibels, percent, quantity_words
 
@@ -76,7 +77,7 @@ def chain_pieces(prediction: Prediction, before: Chain | None) -> list[Piece]:
     pieces: list[Piece] = [diagram(prediction, before), *warnings(prediction)]
     if prediction.chain.level is not None:
         pieces.append(level_plan(prediction))
-    pieces += [totals_table(prediction), cascade_table(prediction)]
+    pieces += [totals_table(prediction), cascade_table(prediction), *level_check(prediction)]
     shares = shares_picture(prediction)
     if shares is not None:
         pieces.append(shares)

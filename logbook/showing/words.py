@@ -18,6 +18,8 @@ _ACRONYMS = {
     "ip1db": "input compression (IP1dB)",
     "op1db": "output compression (OP1dB)",
     "sfdr": "SFDR",
+    "headroom_strongest": "headroom at the strongest signal",
+    "snr_weakest": "signal to noise at the weakest signal",
     "if_rejection": "IF rejection",
 }
 

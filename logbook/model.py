@@ -139,7 +139,7 @@ class Result:
 
     `value` is on equal terms and in base or dB units, nan when not known; `words` then says why. `shown` is what was
     read (`read_as` how, where it was no level) and `corrections` lead from it to `value`, in order. `bound` is "upper"
-    when only an upper bound is known.
+    or "lower" when only such a bound is known.
     """
 
     quantity: str

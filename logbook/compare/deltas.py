@@ -93,12 +93,16 @@ def _judge(
 def _bounded(
     before: Result, after: Result, old: float, new: float, u: float | None, smallest: float, rules: Rules
 ) -> tuple[str, str]:
-    """With an upper bound on the later side a fall beyond doubt still counts; anything else cannot be told."""
-    if after.bound == "upper" and not before.bound:
-        verdict = delta_verdict(old, new, u, smallest, after.better, rules.coverage)
-        if new < old and verdict != SAME:
-            return verdict, "at least: the later reading is an upper bound"
+    """A change that the bounds can only make larger still counts; anything else cannot be told."""
+    falls = after.bound in ("", "upper") and before.bound in ("", "lower")
+    rises = after.bound in ("", "lower") and before.bound in ("", "upper")
+    verdict = delta_verdict(old, new, u, smallest, after.better, rules.coverage)
+    if verdict != SAME and (falls if new < old else rises):
+        return verdict, f"at least: the {'later' if after.bound else 'earlier'} reading is only a bound"
     silent = after if after.bound else before
+    if silent.bound == "lower":
+        words = f"{silent.revision} is only known to be at least so much; read it again over a wider range"
+        return NOT_COMPARABLE, words
     words = f"{silent.revision} is only known to be at most so high: it stands within 1 dB of its bench's own noise"
     return NOT_COMPARABLE, words + "; read it again behind less loss or with a quieter instrument"
 

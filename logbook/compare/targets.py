@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from math import hypot, isnan
 
 from logbook.compare.equal import in_rbw
-from logbook.compare.verdicts import MEETS, NOT_STATED, UNDECIDED, Rules, target_verdict
+from logbook.compare.verdicts import MEETS, MISSES, NOT_STATED, UNDECIDED, Rules, target_verdict
 from logbook.findings import Target, TargetVerdict
 from logbook.hardware import Chain
 from logbook.model import MEASURED, PLANNED, PREDICTED, Result, standard_uncertainty
@@ -56,8 +56,8 @@ def judge_target(
     probability = None if isnan(found.value) else conformity(found.value, found.u, target.low, target.high)
     verdict = target_verdict(found.value, probability, target.low, target.high)
     why = found.words
-    if found.bound and verdict != MEETS:
-        verdict, why = UNDECIDED, "only an upper bound is known"
+    if found.bound and not _settled(found.bound, verdict, target):
+        verdict, why, probability = UNDECIDED, f"only {_BOUNDS[found.bound]} bound is known", None
     elif probability is None and not why:
         why = NOT_STATED
     gap = gap_of(target, found.value)
@@ -67,6 +67,17 @@ def judge_target(
     return TargetVerdict(
         target, revision.label, found.basis, found.value, found.u, probability, verdict, why, gap, closes
     )
+
+
+_BOUNDS = {"upper": "an upper", "lower": "a lower"}
+
+
+def _settled(bound: str, verdict: str, target: Target) -> bool:
+    """Whether a verdict on a bound holds for whatever lies beyond the bound."""
+    open_below, open_above = target.low is None, target.high is None
+    if verdict == MEETS:
+        return open_below if bound == "upper" else open_above
+    return verdict == MISSES and (open_above if bound == "upper" else open_below)
 
 
 def _measured(target: Target, result: Result) -> _Value:

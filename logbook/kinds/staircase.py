@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from math import inf, isnan, sqrt
 
 import numpy as np
@@ -142,7 +143,10 @@ def _results(detector: Calibration, values: Values, setting: Setting) -> tuple[R
     for limit in WITHIN_DB:
         low, high = range_within(detector.steps.input_dbm, errors, limit, detector.window_dbm)
         words = f"no point is within {limit:g} dB of the line" if isnan(low) else ""
-        found.append(result(f"log_range_{limit:g}db", high - low, "dB", None, words))
+        whole = low <= detector.lowest_dbm or high >= detector.highest_dbm
+        each = result(f"log_range_{limit:g}db", high - low, "dB", None, words)
+        # It may be good beyond the steps that were made.
+        found.append(replace(each, bound="lower" if whole else ""))
     return tuple(found)
 
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 from math import isnan
 
 from logbook.compare.equal import conditions_words
+from logbook.compare.verdicts import NEW
 from logbook.findings import Delta
 from logbook.kind import Outcome, View
 from logbook.model import PREDICTED, Block, Result
@@ -73,7 +74,7 @@ def _value(result: Result) -> Line:
         return Muted(f"not known: {result.words}" if result.words else "not known")
     value = plain(result.value, result.unit, result.u)
     if result.bound:
-        return f"at most {value}"
+        return f"at {'most' if result.bound == 'upper' else 'least'} {value}"
     return value if result.u is not None else (value, " ", Muted("doubt not stated"))
 
 
@@ -86,6 +87,8 @@ def _before(delta: Delta | None) -> Line:
 def _verdict(delta: Delta | None) -> Line:
     if delta is None:
         return ""
+    if delta.verdict == NEW:
+        return Verdict(NEW)
     return (Verdict(delta.verdict), " ", reason(delta.why)) if delta.why else Verdict(delta.verdict)
 
 

@@ -8,7 +8,7 @@ from logbook.pages.revision import regression_pieces
 from logbook.pieces import Heading, Note, Piece, Text
 from logbook.problems import CAUTION
 from logbook.revision import Revision
-from logbook.showing.deltas import deltas_pieces
+from logbook.showing.deltas import moved_pieces
 from logbook.showing.targets import targets_table
 
 
@@ -58,7 +58,7 @@ def _last_change(book: Book, latest: Revision) -> list[Piece]:
     if not deltas:
         return []
     title = f"What {latest.label} did, measured"
-    return [Heading(2, title), *deltas_pieces(deltas, "", chains=len(latest.chains) > 1)]
+    return [Heading(2, title), *moved_pieces(deltas, "", chains=len(latest.chains) > 1)]
 
 
 def _closing(book: Book) -> str:

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import numpy as np
+
 from logbook.hardware import Response
 from logbook.kind import Session
 from logbook.problems import Place
@@ -22,4 +24,8 @@ def read_response(file: str, place: Place, session: Session) -> Response | None:
         session.fault(place, "response", f"'{file}' has one port; a stage's response needs S21.", "Give a .s2p file.")
         return None
     gain = magnitude_db(found, 2, 1)
+    if not np.isfinite(gain).all():
+        message = f"'{file}' has points where nothing at all gets through; a stage's response needs a gain at each."
+        session.fault(place, "response", message, "Leave these points out of the file.")
+        return None
     return Response(file, tuple(map(float, found.frequency_hz)), tuple(map(float, gain)))

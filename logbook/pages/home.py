@@ -12,7 +12,7 @@ from logbook.pages.revision import regression_pieces
 from logbook.pieces import Card, Cards, Heading, Items, Line, Link, Muted, Note, Piece, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_value
 from logbook.revision import Revision
-from logbook.showing.deltas import deltas_pieces
+from logbook.showing.deltas import moved_pieces
 from logbook.showing.targets import missing_words, probability_words, target_words
 from logbook.showing.words import difference_unit, revision_link
 
@@ -82,7 +82,7 @@ def _last_change(book: Book, latest: Revision) -> list[Piece]:
     if not deltas:
         return []
     title = f"What {latest.label} did, against {latest.comes_from}"
-    return [Heading(2, title), *deltas_pieces(deltas, kind.capitalize(), chains=len(latest.chains) > 1)]
+    return [Heading(2, title), *moved_pieces(deltas, kind.capitalize(), chains=len(latest.chains) > 1)]
 
 
 def _ahead(book: Book) -> list[Piece]:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from math import isnan
 
-from logbook.compare.verdicts import GONE, NEW
+from logbook.compare.verdicts import GONE, NEW, SAME
 from logbook.findings import Agreement, Delta
 from logbook.pieces import Folded, Line, Muted, Piece, Span, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_value
@@ -35,6 +35,14 @@ def deltas_pieces(deltas: Iterable[Delta], caption: str, *, chains: bool = False
     sided = [d for d in found if d.verdict not in (NEW, GONE)]
     pieces: list[Piece] = [deltas_table(sided, caption, chains=chains)] if sided else []
     return [*pieces, *one_sided(found, chains=chains)]
+
+
+def moved_pieces(deltas: Iterable[Delta], caption: str, *, chains: bool = False) -> list[Piece]:
+    """As `deltas_pieces`, but what stayed the same is only named."""
+    found = list(deltas)
+    pieces = deltas_pieces([d for d in found if d.verdict != SAME], caption, chains=chains)
+    same = [result_words(d.quantity, d.at_hz, d.name, d.chain if chains else "") for d in found if d.verdict == SAME]
+    return [*pieces, Text(("The same within doubt: ", Muted("; ".join(same)), "."))] if same else pieces
 
 
 def one_sided(deltas: Iterable[Delta], *, chains: bool = False) -> list[Piece]:

@@ -195,13 +195,13 @@ def whole_plan(avoid: Values, values: Values, search: Search) -> Plan | None:
         return None
     ifs = [each.value for each in avoid.get("if", ())]
     width = search.bandwidth_hz
-    if chain is not None and first is not None:
+    if chain is not None:
         spots = spots_of(chain, search.sources, chain.signal_hz, 0.0)
-        ifs = ifs or [spots[1].frequency_hz]
-        width = width or narrowest(chain, chain.stage_names.index(first.name)) or None
+        ifs = ifs or [spot.frequency_hz for spot in spots[1:2]]
+        width = width or narrowest(chain, chain.stage_names.index(first.name) if first is not None else 0) or None
     if not ifs:
         hint = "Such as 'if: [10.7 MHz, 21.4 MHz]'."
-        session.fault(avoid.start, "missing-key", "'avoid' needs the key 'if': the chain has no mixer.", hint)
+        session.fault(avoid.start, "missing-key", "'avoid' needs the key 'if': no chain says it.", hint)
     if width is None:
         message = "Nothing says how wide the IF is."
         session.fault(avoid.start, "missing-key", message, "Add 'bandwidth:' to the block.")

@@ -17,7 +17,10 @@ from logbook.showing.spurs import Spur, sources_piece, spur_pieces
 from logbook.spurs.setting import SpurSource
 from logbook.stage_fields import LEVEL
 
-_SHIFT_HELP = "What was shifted, by how much, and how far the spur moved: {source: clock, by: 1 kHz, seen: -3 kHz}."
+_SHIFT_HELP = (
+    "What was shifted (a source, or 'tuning'), by how much, and how far the spur moved: "
+    "{source: clock, by: 1 kHz, seen: -3 kHz}."
+)
 _DROP_HELP = "By how much the input (or a source) was lowered, and how far the spur fell: {by: 10 dB, seen: 20 ± 1 dB}."
 
 _MOVES = mapping(
@@ -84,11 +87,14 @@ seen:
     frequency: 50 MHz ± 1 kHz
     level: -112.5(3) dBm
     drops: {by: 10 dB, seen: 0 ± 1 dB}
-    moves: {source: reference, by: 1 kHz, seen: 0 ± 0.3 kHz}
+    moves:
+      - {source: tuning, by: 1 kHz, seen: 1 kHz}
+      - {source: reference, by: 1 kHz, seen: 0 ± 0.3 kHz}
   - name: burble
     frequency: 21.402 MHz
     tolerance: 3 kHz
     where: if-filter
+    tuned: 50.098 MHz
 avoid:
   tune: [50 MHz, 52 MHz]
   if: [10.7 MHz, 21.4 MHz]

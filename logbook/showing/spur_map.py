@@ -128,7 +128,7 @@ def _chart(choice: Choice, plan: Plan) -> Chart:
     low, high = plan.asked.tune
     wide = _WIDE * (high - low)
     # The range itself, from end to end at order zero, so that the map shows where nothing is too.
-    series = [Series("", [low / 1e6, high / 1e6], [0.0, 0.0], "limit")]
+    series = [Series("", [low / 1e6, high / 1e6], [0.0, 0.0], "before")]
     sorts: tuple[tuple[str, str, Role], ...] = (("IF", "into the IF", "now"), (SIGNAL, "onto the signal", "other"))
     for spot, words, role in sorts:
         there = [each for each in choice.crossings if each.spot == spot]

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from logbook.pieces import Folded, Line, Muted, Note, Piece, Strong, Table, Text, Verdict
+from logbook.pieces import Folded, Line, Note, Piece, Strong, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_frequency
 from logbook.spurs.candidates import Candidate
 from logbook.spurs.setting import SIGNAL, Setting, SpurSource
@@ -75,24 +75,22 @@ def spot_words(candidate: Candidate, spur: Spur) -> str:
 
 
 def _table(spur: Spur, found: Sequence[Candidate], caption: str) -> Table:
-    trial = spur.trial
-    head: list[Line] = ["product", "what it is", "order", "lands on", "off by"]
-    if trial is not None:
-        head.append("in the next trial")
-    rows: list[tuple[Line, ...]] = []
-    for each in found:
-        row: list[Line] = [
-            each.words,
-            each.response,
-            str(each.order),
-            spot_words(each, spur),
-            show_delta(round(each.offset_hz, 1), "Hz"),
-        ]
-        if trial is not None:
-            row.append(trial.outcome_of(each))
-        verdict: Line = (Verdict(STRUCK), " ", Muted("; ".join(each.struck))) if each.struck else Verdict(POSSIBLE)
-        rows.append((*row, verdict))
-    return Table((*head, "verdict"), tuple(rows), caption, frozenset({2, 4}))
+    """Verdict beside the product, so that a phone shows both; columns that would be empty are left out."""
+    columns: list[tuple[str, list[Line]]] = [
+        ("product", [each.words for each in found]),
+        ("verdict", [Verdict(STRUCK if each.struck else POSSIBLE) for each in found]),
+        ("what it is", [each.response for each in found]),
+        ("order", [str(each.order) for each in found]),
+        ("lands on", [spot_words(each, spur) for each in found]),
+        ("off by", [show_delta(round(each.offset_hz, 1), "Hz") for each in found]),
+    ]
+    if spur.trial is not None:
+        columns.append(("in the next trial", [spur.trial.outcome_of(each) for each in found]))
+    columns.append(("what speaks against it", ["; ".join(each.struck) for each in found]))
+    columns = [(head, cells) for head, cells in columns if any(cells)]
+    heads = tuple(head for head, _ in columns)
+    rows = tuple(zip(*(cells for _, cells in columns), strict=True))
+    return Table(heads, rows, caption, frozenset(heads.index(head) for head in ("order", "off by")))
 
 
 def _next(spur: Spur, left: Sequence[Candidate]) -> list[Piece]:

@@ -119,7 +119,8 @@ def _note(
 def _against_move(move: Move, said: float) -> str:
     if move.source == TUNING:
         by, seen = show_frequency(abs(move.by_hz)), show_frequency(abs(move.seen_hz))
-        return f"tuning by {by} would move its tone by {hertz(said)}, not by {seen}"
+        would = f"move its tone by {hertz(said)}" if said else "leave its tone where it is"
+        return f"tuning by {by} would {would}; it moved by {seen}"
     by, seen = show_delta(move.by_hz, "Hz"), show_delta(move.seen_hz, "Hz")
     if isnan(said):
         return f"it would be heard at every tuning, and moved by {seen}"

@@ -74,6 +74,10 @@ def _options(left: Sequence[Candidate], setting: Setting, tolerance_hz: float) -
         by = tuning_step(setting, tolerance_hz)
         options.append(_Option(TUNING, by, expected_move(left, setting, TUNING, by), UNSTATED * by))
     by, resolution = shift_for(tolerance_hz)
+    if not setting.display:
+        # Nobody retunes the unit: the spur has to stay in the pass-band, and both readings are of one instrument.
+        by = tuning_step(setting, tolerance_hz)
+        resolution = UNSTATED * by
     for source in setting.sources:
         if source.movable:
             options.append(_Option(source.name, by, expected_move(left, setting, source.name, by), resolution))
@@ -105,7 +109,7 @@ def _what_to_do(option: _Option, setting: Setting) -> str:
     by = show_frequency(option.by)
     if option.name == TUNING:
         return f"Tune by {by} and listen how far the spur's tone moves."
-    again = " and tune to the spur again" if setting.display else " and follow the spur with the instrument"
+    again = " and tune to the spur again" if setting.display else " and leave the instrument as it is"
     thing = "the signal that is fed in" if option.name == SIGNAL else option.name
     return f"Shift {thing} up by {by}{again}."
 

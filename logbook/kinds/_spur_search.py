@@ -15,7 +15,7 @@ from logbook.showing.spur_map import Plan
 from logbook.showing.spurs import Spur
 from logbook.spurs.candidates import candidates
 from logbook.spurs.evidence import INPUT, TUNING, Drop, Move, judged
-from logbook.spurs.planning import Asked, common_crossings, ranked_choices
+from logbook.spurs.planning import HIGH, Asked, Choice, common_crossings, ranked_choices
 from logbook.spurs.setting import SIGNAL, Setting, Spot, SpurSource, at_stage, narrowest, own_sources, spots_of
 from logbook.spurs.trials import next_trial
 
@@ -211,7 +211,20 @@ def whole_plan(avoid: Values, values: Values, search: Search) -> Plan | None:
     sides = ("high", "low") if side == "both" else (side,)
     asked = Asked((low.value, high.value), width, search.order, _fixed_sources(search, first is not None))
     choices = ranked_choices(asked, list(dict.fromkeys(ifs)), sides)
-    return Plan(asked, tuple(choices), tuple(common_crossings(asked)))
+    return Plan(asked, tuple(choices), tuple(common_crossings(asked)), _built(search, choices))
+
+
+def _built(search: Search, choices: Sequence[Choice]) -> str:
+    """The key of the choice that the chain's first mixer is, when it is among them."""
+    chain = search.chain
+    spots = [] if chain is None else spots_of(chain, search.sources, chain.signal_hz, 0.0)
+    if chain is None or len(spots) < 2:
+        return ""
+    above = search.sources[spots[1].lo].at(chain.signal_hz) > chain.signal_hz and spots[1].output == "difference"
+    for each in choices:
+        if abs(each.if_hz - spots[1].frequency_hz) < 1.0 and (each.side == HIGH) == above:
+            return each.key
+    return ""
 
 
 def _fixed_sources(search: Search, has_mixer: bool) -> tuple[SpurSource, ...]:

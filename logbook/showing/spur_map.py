@@ -6,7 +6,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from logbook.physics.mixing import Band
-from logbook.pieces import Axis, Chart, Folded, Line, Mark, Note, Picture, Piece, Role, Series, Strong, Table
+from logbook.pieces import Axis, Chart, Folded, Line, Mark, Muted, Note, Picture, Piece, Role, Series, Strong, Table
 from logbook.quantity_display import show_frequency
 from logbook.showing.words import percent
 from logbook.spurs.planning import Asked, Choice, Crossing
@@ -22,11 +22,12 @@ _WIDE = 1 / 150
 
 @dataclass(frozen=True, slots=True)
 class Plan:
-    """What was asked, the choices in their rank, and what is heard whichever is taken."""
+    """What was asked, the choices in their rank, what is heard whichever is taken, and the key of the one built."""
 
     asked: Asked
     choices: tuple[Choice, ...]
     common: tuple[Crossing, ...] = ()
+    built: str = ""
 
 
 def plan_pieces(plan: Plan) -> list[Piece]:
@@ -65,7 +66,8 @@ def _ranking(plan: Plan) -> Table:
         told = [_by_order(each), lowest, percent(each.affected)]
         if each.why:
             told = [f"not usable: {each.why}", "", ""]
-        rows.append((each.name, _band(each.lo), *told, _band(each.image), _band(each.half_if)))
+        name: Line = (each.name, " ", Muted("as it is now")) if each.key == plan.built else each.name
+        rows.append((name, _band(each.lo), *told, _band(each.image), _band(each.half_if)))
     head = ("IF", "oscillator", "products", "lowest order", "of the range", "image", "half-IF")
     caption = f"Choices for {_band((low, high))}, products up to order {plan.asked.order}, fewest of low order first"
     return Table(head, tuple(rows), caption, frozenset({3, 4}))

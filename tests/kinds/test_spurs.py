@@ -263,6 +263,52 @@ def test_a_shift_seen_on_the_dial_leaves_what_moves_so(row: dict[str, int], word
         assert source in named(spur)[wrong].struck[0]
 
 
+DOUBLE = """\
+chain: rx
+signal: 14.3 MHz
+stages:
+  - {name: first, loss: 6 dB, lo: {follows: signal, offset: 45 MHz}}
+  - {name: roofing, loss: 3 dB, bandwidth: 15 kHz}
+  - {name: second, loss: 6 dB, lo: 44.545 MHz}
+  - {name: if-filter, loss: 3 dB, bandwidth: 2.4 kHz}
+"""
+
+
+@pytest.mark.parametrize(
+    ("cause", "row", "clock"),
+    [
+        # Rows of first and second oscillator, outside signal, clock; all stand at 455 kHz when the dial shows 14.2 MHz.
+        ("(14.2 MHz outside)", (1, -1, -1, 0), 16.0),
+        ("2·clock", (1, -1, 0, -2), 7.1),
+        ("lo of second + (15.11 MHz outside) − lo of first", (-1, 1, 1, 0), 16.0),
+        ("2·lo of second − 3·clock", (0, 2, 0, -3), 29.545),
+        ("2·clock − lo of first", (-1, 0, 0, 2), 29.8275),
+    ],
+)
+@pytest.mark.parametrize("source", ["lo of second", "lo of first", "clock"])
+def test_a_shift_behind_two_mixers(cause: str, row: tuple[int, ...], clock: float, source: str) -> None:
+    """The dial moves as a receiver with two mixers does that is really retuned, by a search for the root."""
+    outside = 15.11 if "15.11" in cause else 14.2
+    shifted = ("lo of first", "lo of second", "", "clock").index(source)
+
+    def off(tuned: float, shift: float) -> float:
+        hz = [tuned + 45 * MHZ, 44.545 * MHZ, outside * MHZ, clock * MHZ]
+        hz[shifted] += shift
+        return abs(sum(n * f for n, f in zip(row, hz, strict=True))) - 0.455 * MHZ
+
+    assert off(14.2 * MHZ, 0.0) == pytest.approx(0.0, abs=1e-3)
+    if row[0]:
+        seen = float(optimize.brentq(off, 14.1 * MHZ, 14.3 * MHZ, args=(700.0,), xtol=1e-3)) - 14.2 * MHZ
+    else:
+        # No tuning moves it, so that it was not seen to move on the dial.
+        seen = 0.0
+    moves = f"moves: {{source: {source}, by: 700 Hz, seen: {seen:.3f} ± 1 Hz}}"
+    sources = f"sources: {{name: clock, frequency: {clock} MHz}}\n"
+    names = named(only_spur(DOUBLE, f"{sources}order: 5\nseen: {{frequency: 14.2 MHz ± 0.5 kHz, {moves}}}\n"))
+    assert names[cause].struck == ()
+    assert names[cause].agreed == (1 if row[0] else 0)
+
+
 def test_tuning_tells_the_harmonic_of_the_oscillator() -> None:
     """By 1 kHz of tuning a true signal's tone moves by 1 kHz, what meets the third harmonic by 3 kHz."""
     moves = "moves: {source: tuning, by: 1 kHz, seen: 3 kHz}"

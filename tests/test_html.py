@@ -123,7 +123,10 @@ def test_a_table_names_its_rows_and_columns_and_sets_numbers_apart() -> None:
 
 def test_words_among_figures_may_wrap_and_figures_may_not() -> None:
     table = Table(
-        ("total", "predicted"), (("gain", "18.0 dB"), ("IIP2", "not known: no stage gives one")), "", frozenset({1})
+        ("total", "predicted"),
+        (("gain", "18.0 dB"), ("IIP2", "not known: 2 of 3 stages give none")),
+        "",
+        frozenset({1}),
     )
     classes = [td.get("class", "").split() for td in page(table).iter("td")]
     assert classes == [["lb-number"], ["lb-number", "lb-words"]]

@@ -30,6 +30,9 @@ def _cell(cell: Line, column: int, table: Table, context: Context, scope: str | 
     classes = ""
     if column in table.numeric:
         # Words in a column of figures ("not known: ...") may be long and then have to wrap; figures never do.
-        figure = scope == "col" or any(sign.isdigit() for sign in line_words(cell))
-        classes = "lb-number" if figure else "lb-number lb-words"
+        classes = "lb-number" if scope == "col" or _is_figure(line_words(cell)) else "lb-number lb-words"
     return element("td" if scope is None else "th", line_html(cell, context.url), classes, scope=scope)
+
+
+def _is_figure(words: str) -> bool:
+    return len(words) <= 24 or words.lstrip("+-±<>=≤≥ ")[:1].isdigit()

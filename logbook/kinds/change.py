@@ -7,11 +7,11 @@ from typing import Any
 
 from logbook.fields import Asked, Field, flag, many, mapping, quantity, read_mapping, text
 from logbook.hardware import Chain, Step
-from logbook.kind import Kind, Session
+from logbook.kind import Kind, Outcome, Session, View
 from logbook.kinds._response import read_response
-from logbook.model import PLANNED, Values
+from logbook.model import PLANNED, Block, Values
+from logbook.pieces import Piece
 from logbook.problems import did_you_mean
-from logbook.showing.chains import show_change
 from logbook.stage_fields import PARAMETER_FIELDS, STAGE_FIELDS, StageMaker
 from logbook.yaml_nodes import Mapping, Node
 
@@ -172,6 +172,13 @@ def _insert(values: Values, maker: StageMaker, session: Session) -> Step | None:
     return Step("insert", stage.name, stage.place, stage, values[key], values.place(key), before=key == "before")
 
 
+def show(block: Block, outcome: Outcome, view: View) -> list[Piece]:
+    """What was done and what it is predicted to do; what shows it is imported only where pages are made."""
+    from logbook.showing.chains import show_change
+
+    return show_change(block, outcome, view)
+
+
 KIND = Kind(
     word="change",
     title="Change",
@@ -180,5 +187,5 @@ KIND = Kind(
     example=EXAMPLE,
     needs_revision=True,
     declare=declare,
-    show=show_change,
+    show=show,
 )

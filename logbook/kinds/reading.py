@@ -5,13 +5,13 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from logbook.fields import Asked, Field, choice, many, named, quantity, read_mapping, text
-from logbook.kind import Kind, Outcome, Session
+from logbook.kind import Kind, Outcome, Session, View
 from logbook.kinds._measured import measured, not_on_a_plan, setting_of
 from logbook.model import Block, Result
+from logbook.pieces import Piece
 from logbook.problems import did_you_mean
 from logbook.quantities import BETTER, KNOWN, Better, KnownQuantity, known_quantity
 from logbook.quantity import Quantity
-from logbook.showing.readings import show_results
 from logbook.stage_fields import LEVEL
 from logbook.units import DIMENSIONS
 from logbook.yaml_nodes import Node, Scalar
@@ -111,6 +111,13 @@ def calculate(block: Block, session: Session) -> Outcome:
     return Outcome(tuple(found))
 
 
+def show(block: Block, outcome: Outcome, view: View) -> list[Piece]:
+    """The results as read and on equal terms; what shows it is imported only where pages are made."""
+    from logbook.showing.readings import show_results
+
+    return show_results(block, outcome, view)
+
+
 KIND = Kind(
     word="reading",
     title="Readings",
@@ -120,5 +127,5 @@ KIND = Kind(
     many=True,
     needs_revision=True,
     calculate=calculate,
-    show=show_results,
+    show=show,
 )

@@ -55,7 +55,6 @@ class Spot:
     lo_sign: int = 0
     way: int = 1
     output: str = "difference"
-    behind: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -141,7 +140,7 @@ def behind(
     follows = way * before.follows + lo_sign * sources[lo].follows
     frequency = way * before.frequency_hz + lo_sign * lo_hz
     wanted = tuple(int(n) for n in row)
-    return Spot(name, frequency, follows, half_width_hz, wanted, index, lo, lo_sign, way, output, name)
+    return Spot(name, frequency, follows, half_width_hz, wanted, index, lo, lo_sign, way, output)
 
 
 def _unit(index: int, length: int) -> tuple[int, ...]:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from itertools import combinations
 
 from logbook.compare.deltas import measured_delta
 from logbook.compare.equal import why_not_comparable
@@ -99,14 +100,16 @@ def _accepts_nothing(accept: Accept, found: Sequence[_Found], problems: Problems
 
 
 def spreads(results: Mapping[str, Sequence[Result]], rules: Rules) -> list[Spread]:
-    """Readings of one key within one revision that differ by more than their stated doubt allows."""
-    found = []
-    for key, repeated in results.items():
-        last = repeated[-1]
-        for first in repeated[:-1]:
-            why = why_not_comparable(first, last)
-            delta = measured_delta(first, last, why, rules)
-            if delta.verdict in (SAME, NOT_COMPARABLE) or delta.u is None:
-                continue
-            found.append(Spread(key, last.revision, first, last, delta.delta, delta.u, last.unit))
-    return found
+    """Readings of one key on one revision that differ by more than their doubt allows: the worst pair of each key."""
+    worst = (_worst_pair(repeated, rules) for repeated in results.values() if len(repeated) > 1)
+    return [spread for spread in worst if spread is not None]
+
+
+def _worst_pair(repeated: Sequence[Result], rules: Rules) -> Spread | None:
+    """The two readings whose difference is largest against its doubt; None where all agree within theirs."""
+    found: list[Spread] = []
+    for first, second in combinations(repeated, 2):
+        delta = measured_delta(first, second, why_not_comparable(first, second), rules)
+        if delta.verdict not in (SAME, NOT_COMPARABLE) and delta.u is not None:
+            found.append(Spread(second.key, second.revision, first, second, delta.delta, delta.u, second.unit))
+    return max(found, key=lambda spread: abs(spread.difference) / spread.u, default=None)

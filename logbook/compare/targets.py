@@ -12,7 +12,7 @@ from logbook.findings import Target, TargetVerdict
 from logbook.hardware import Chain
 from logbook.model import MEASURED, PLANNED, PREDICTED, Result, standard_uncertainty
 from logbook.physics.uncertainty import conformity, linear_sum
-from logbook.prediction import Prediction, Terms
+from logbook.prediction import Estimate, Prediction, Terms
 from logbook.quantities import known_quantity
 from logbook.revision import Revision
 
@@ -134,6 +134,15 @@ class Weighed:
     currency: str
 
 
+def _expected_u(before: TargetVerdict, old: Estimate, new: Estimate) -> float | None:
+    """u of what is expected: of the new prediction alone where nothing was measured, else of reading and change."""
+    if before.basis == PREDICTED:
+        return new.u
+    parts = linear_sum([(1.0, new.parts), (-1.0, old.parts)])
+    spread = [u for u in (before.u, standard_uncertainty(parts)) if u is not None]
+    return hypot(*spread) if spread else None
+
+
 def weigh(revision: Revision, parent: Revision, before: TargetVerdict, predict: Predict) -> list[Weighed]:
     """The plan and its alternatives against one target, best first: by part of the gap closed, then by cost.
 
@@ -153,9 +162,7 @@ def weigh(revision: Revision, parent: Revision, before: TargetVerdict, predict: 
         one, other = (predict(each, terms).totals.get(target.quantity) for each in (old, chain))
         if one is None or other is None or isnan(one.value) or isnan(other.value):
             continue
-        parts = linear_sum([(1.0, other.parts), (-1.0, one.parts)])
-        spread = [u for u in (before.u, standard_uncertainty(parts)) if u is not None]
-        u = hypot(*spread) if spread else None
+        u = _expected_u(before, one, other)
         value = before.value + other.value - one.value
         verdict = target_verdict(value, conformity(value, u, target.low, target.high), target.low, target.high)
         closes = 1 - gap_of(target, value) / before.gap if before.gap > 0 else None

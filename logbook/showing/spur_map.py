@@ -13,7 +13,7 @@ from logbook.spurs.planning import Asked, Choice, Crossing
 from logbook.spurs.setting import SIGNAL
 
 # Of a busy map the lowest orders are named; of a long table the rest stands folded beneath.
-_MARKS = 5
+_MARKS = 4
 _ROWS = 20
 _MORE = 150
 # A stretch wider than this part of the range is drawn as a line and not as a point.
@@ -119,11 +119,16 @@ def _alt(choice: Choice, plan: Plan) -> str:
 
 
 def _table(found: Sequence[Crossing], caption: str) -> Table:
-    rows: list[tuple[Line, ...]] = []
-    for each in found:
-        lands = "the signal frequency" if each.spot == SIGNAL else "the IF"
-        rows.append((_band((each.low_hz, each.high_hz)), each.words, str(each.order), lands, each.response))
-    return Table(("tuned to", "product", "order", "falls onto", "what it is"), tuple(rows), caption, frozenset({2}))
+    columns: list[tuple[str, list[Line]]] = [
+        ("tuned to", [_band((each.low_hz, each.high_hz)) for each in found]),
+        ("product", [each.words for each in found]),
+        ("order", [str(each.order) for each in found]),
+        ("falls onto", ["the signal frequency" if each.spot == SIGNAL else "the IF" for each in found]),
+        ("what it is", [each.response for each in found]),
+    ]
+    told = [(head, cells) for head, cells in columns if any(cells)]
+    rows = tuple(zip(*(cells for _, cells in told), strict=True))
+    return Table(tuple(head for head, _ in told), rows, caption, frozenset({2}))
 
 
 def _chart(choice: Choice, plan: Plan) -> Chart:
@@ -144,5 +149,19 @@ def _chart(choice: Choice, plan: Plan) -> Chart:
             x = [hz / 1e6 for each in stretches for hz in (each.low_hz, each.high_hz, float("nan"))]
             y = [order for each in stretches for order in (float(each.order), float(each.order), float("nan"))]
             series.append(Series(f"{words}, over a stretch", x, y, role))
-    marks = tuple(Mark(each.middle_hz / 1e6, float(each.order), each.words) for each in choice.crossings[:_MARKS])
-    return Chart(Axis("tuned to, MHz"), Axis("order of the product"), tuple(series), marks=marks)
+    return Chart(Axis("tuned to, MHz"), Axis("order of the product"), tuple(series), marks=_marks(choice, wide))
+
+
+def _marks(choice: Choice, near_hz: float) -> tuple[Mark, ...]:
+    """The lowest orders by name; products that stand at one place of the map share a mark."""
+    groups: list[list[Crossing]] = []
+    for each in choice.crossings:
+        same = [g for g in groups if g[0].order == each.order and abs(g[0].middle_hz - each.middle_hz) <= near_hz]
+        if same:
+            same[0].append(each)
+        elif len(groups) < _MARKS:
+            groups.append([each])
+    words = [g[0].words + (f" and {len(g) - 1} more" if len(g) > 1 else "") for g in groups]
+    return tuple(
+        Mark(group[0].middle_hz / 1e6, float(group[0].order), said) for group, said in zip(groups, words, strict=True)
+    )

@@ -96,10 +96,16 @@ def _noise_rows(quantity: str, wanted: float, prediction: Prediction) -> list[St
     needed_own = needed_own_temperature(stages, target_k, source)
     figures = needed_nf(needed_own, stages.image)
     now = 1 + stages.own_temperature_k / T0 + stages.image
-    ideal = _noise_total(quantity, each_ideal(stages), source, prediction)
+    # Ideal in what the row speaks of: its noise alone, where intercepts count as well.
+    quiet = replace(each_ideal(stages), iip3_dbm=np.broadcast_to(stages.iip3_dbm, (len(now), len(now))))
+    ideal = _noise_total(quantity, quiet, source, prediction)
+    lineup = prediction.chain.lineup
     rows = []
     for i, stage in enumerate(prediction.chain.stages):
         share = prediction.nodes[i].noise_share
+        if stage.passive and lineup is not None and lineup.adjust == stage.name:
+            # Its loss is what the lineup makes it.
+            continue
         if stage.passive:
             rows.append(_loss_row(quantity, wanted, i, stage, source, prediction, share))
         else:
@@ -167,10 +173,24 @@ def _loss_row(
     own = np.repeat(stages.own_temperature_k[None, :], len(losses), axis=0)
     gain[:, index] = -losses
     own[:, index] = (10 ** (losses / 10) - 1) * temperature
+    _line_up(prediction, index, loss - losses, gain, own)
     totals = _noise_total(quantity, replace(stages, gain_db=gain, own_temperature_k=own), source, prediction)
     met = totals >= wanted if quantity == "sfdr" else totals <= wanted
     needed = float(losses[int(np.argmax(met))]) if bool(met.any()) else float("nan")
     return StageNeeds(stage.name, "loss", loss, needed, float(totals[-1]), share)
+
+
+def _line_up(prediction: Prediction, index: int, gained: Array, gain: Array, own: Array) -> None:
+    """What is gained ahead of a lineup's level is taken back by the stage that it adjusts, within its range."""
+    chain = prediction.chain
+    if chain.lineup is None or index >= chain.stage_names.index(chain.lineup.at):
+        return
+    adjusted = chain.stage_names.index(chain.lineup.adjust)
+    stage = chain.stages[adjusted]
+    low, top = stage.gain_range or (-np.inf, np.inf)
+    gain[:, adjusted] = np.clip(prediction.totals["setting"].value - gained, low, top)
+    if stage.passive:
+        own[:, adjusted] = (10 ** (-gain[:, adjusted] / 10) - 1) * (stage.value("temperature") or T0)
 
 
 def _intercept_rows(quantity: str, wanted: float, prediction: Prediction) -> list[StageNeeds]:

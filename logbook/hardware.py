@@ -131,6 +131,11 @@ class Chain:
         return next((stage for stage in self.stages if stage.name == name), None)
 
     @property
+    def minds_frequency(self) -> bool:
+        """Whether what it does depends on the signal's frequency: by a response, or by the noise of the sky."""
+        return self.galactic or any(stage.response is not None for stage in self.stages)
+
+    @property
     def stage_names(self) -> list[str]:
         """The stages' names, in order."""
         return [stage.name for stage in self.stages]

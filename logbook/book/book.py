@@ -19,7 +19,7 @@ from logbook.hardware import Chain
 from logbook.kind import Outcome, View
 from logbook.kinds import registry
 from logbook.model import Block, Entry, Result
-from logbook.prediction import Prediction, Terms, predict
+from logbook.prediction import Prediction, Predictor, Terms
 from logbook.problems import Problem, Problems
 from logbook.revision import Revision
 
@@ -100,15 +100,7 @@ def make_book(sources: Iterable[SourceFile], folder: Path | None, settings: Sett
     kinds = registry()
     files = {source.path: read_file(source, kinds, problems) for source in sources}
     entries = [file.entry for file in files.values() if file.entry is not None]
-    known: dict[tuple[int, Terms], tuple[Chain, Prediction]] = {}
-
-    def predicted(chain: Chain, terms: Terms) -> Prediction:
-        # By identity: chains are frozen and shared between revisions; hashing them whole costs more than predicting.
-        terms = terms.for_chain(chain)
-        key = (id(chain), terms)
-        if key not in known:
-            known[key] = (chain, predict(chain, terms))
-        return known[key][1]
+    predicted = Predictor()
 
     def reader(path: str) -> Callable[..., bytes | None]:
         return file_reader(folder, path, problems)

@@ -6,7 +6,7 @@ import re
 from collections.abc import Iterable
 
 from logbook.book.reading import ReadFile
-from logbook.problems import ANY_FAULT, Problem, Problems
+from logbook.problems import ANY_FAULT, Place, Problems
 
 _WORD = re.compile(r"[\w.+-]+")
 
@@ -16,17 +16,18 @@ def drop_consequences(files: Iterable[ReadFile], problems: Problems) -> None:
     following = [problem for problem in problems if problem.about]
     if not following:
         return
-    lost = _lost_words(files, [problem for problem in problems if not problem.about])
+    roots = [problem.place for problem in problems if not problem.about]
+    lost = _lost_words(files, roots + [named for place in roots for named in problems.naming(place.file)])
     if not lost:
         return
     problems.drop(p for p in following if p.about == ANY_FAULT or set(_WORD.findall(p.about)) <= lost)
 
 
-def _lost_words(files: Iterable[ReadFile], roots: list[Problem]) -> set[str]:
+def _lost_words(files: Iterable[ReadFile], roots: list[Place]) -> set[str]:
     """Every word of the blocks and entries in which a fault of their own stands."""
     by_file: dict[str, list[int]] = {}
-    for problem in roots:
-        by_file.setdefault(problem.place.file, []).append(problem.place.line)
+    for place in roots:
+        by_file.setdefault(place.file, []).append(place.line)
     words: set[str] = set()
     for file in files:
         lines = by_file.get(file.path)

@@ -37,6 +37,7 @@ def file_reader(folder: Path | None, entry: str, problems: Problems) -> ReadFile
             problems.add(place, "path", message, "Name a file in the logbook's folder, relative to this entry.")
             return None
         path = folder / inside
+        problems.file_named(inside, place)
         try:
             if not path.resolve().is_relative_to(folder.resolve()):
                 problems.add(place, "path", f"'{file}' leads out of the logbook by a link.")

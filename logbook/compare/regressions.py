@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from itertools import combinations
 
 from logbook.compare.deltas import measured_delta
-from logbook.compare.equal import why_not_comparable
+from logbook.compare.equal import in_rbw, why_not_comparable
 from logbook.compare.verdicts import MEETS, MISSES, NOT_COMPARABLE, SAME, WORSE, Rules
 from logbook.findings import Accept, Delta, Regression, Spread, TargetVerdict
 from logbook.model import PREDICTED, Result
@@ -109,6 +109,9 @@ def _worst_pair(repeated: Sequence[Result], rules: Rules) -> Spread | None:
     """The two readings whose difference is largest against its doubt; None where all agree within theirs."""
     found: list[Spread] = []
     for first, second in combinations(repeated, 2):
+        before = in_rbw(first, second.conditions.rbw_hz)
+        if abs(second.value - before) < rules.smallest(second.quantity, second.unit, before):
+            continue
         delta = measured_delta(first, second, why_not_comparable(first, second), rules)
         if delta.verdict not in (SAME, NOT_COMPARABLE) and delta.u is not None:
             found.append(Spread(second.key, second.revision, first, second, delta.delta, delta.u, second.unit))

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import numpy as np
+import numpy.typing as npt
 
-from logbook.hardware import Chain, Parameter, Stage
+from logbook.hardware import Chain, Parameter
 from logbook.physics.constants import T0, Array
 from logbook.physics.noise import (
     galactic_temperature,
@@ -36,28 +37,37 @@ class Copies:
     def __init__(self, chain: Chain, terms: Terms) -> None:
         self.chain = chain
         self.frequencies = frequencies(chain, terms.at_hz)
-        self._doubts = list(_doubts(chain, terms))
-        self.sources = [parameter.source for _, _, parameter in self._doubts]
-        self.count = 1 + 2 * len(self._doubts)
-        self._shifts = {(i, name): (k, p.u or 0.0) for k, (i, name, p) in enumerate(self._doubts)}
+        doubts = _doubts(chain, terms)
+        self.sources = [parameter.source for _, _, parameter in doubts]
+        self.count = 1 + 2 * len(doubts)
+        self._shifts: dict[str, list[tuple[int, int, float]]] = {}
+        for k, (index, name, parameter) in enumerate(doubts):
+            self._shifts.setdefault(name, []).append((index, k, parameter.u or 0.0))
 
-    def column(self, index: int, name: str, default: float = float("nan")) -> Array:
-        """One parameter of one stage over all copies."""
-        found = self.chain.stages[index].parameters.get(name)
-        return self._spread(index, name, default if found is None else found.value)
+    def matrix(self, name: str, default: float = float("nan")) -> Array:
+        """One parameter of all stages over all copies, [copies, stages]; `default` where a stage does not give it."""
+        stages = self.chain.stages
+        values = [default if (p := stage.parameters.get(name)) is None else p.value for stage in stages]
+        found = np.empty((self.count, len(stages)))
+        found[:] = values
+        for index, k, u in self._shifts.get(name, ()):
+            if index >= 0:
+                found[1 + 2 * k, index] += u
+                found[2 + 2 * k, index] -= u
+        return found
+
+    def given(self, name: str) -> npt.NDArray[np.bool_]:
+        """Which stages give a parameter, [stages]."""
+        return np.array([name in stage.parameters for stage in self.chain.stages])
 
     def scalar(self, name: str, parameter: Parameter | None, default: float = float("nan")) -> Array:
         """One parameter of the chain as a whole over all copies."""
-        return self._spread(-1, name, default if parameter is None else parameter.value)
-
-    def _spread(self, index: int, name: str, value: float) -> Array:
-        column = np.full(self.count, value)
-        shift = self._shifts.get((index, name))
-        if shift is not None:
-            k, u = shift
-            column[1 + 2 * k] += u
-            column[2 + 2 * k] -= u
-        return column
+        found = np.full(self.count, default if parameter is None else parameter.value)
+        for index, k, u in self._shifts.get(name, ()):
+            if index < 0:
+                found[1 + 2 * k] += u
+                found[2 + 2 * k] -= u
+        return found
 
     def estimate(self, name: str, values: Array, words: str = "") -> Estimate:
         """A total over all copies, as a number with its doubt by source (central differences)."""
@@ -66,7 +76,7 @@ class Copies:
         if not np.isfinite(nominal):
             return Estimate(float("nan"), unit, None, words or "not known")
         halves = (values[1::2] - values[2::2]) / 2
-        parts = {s: float(half) for s, half in zip(self.sources, halves, strict=True) if abs(half) > 1e-12}
+        parts = {s: half for s, half in zip(self.sources, halves.tolist(), strict=True) if abs(half) > 1e-12}
         return Estimate(nominal, unit, parts or None)
 
 
@@ -78,8 +88,7 @@ def _doubts(chain: Chain, terms: Terms) -> list[tuple[int, str, Parameter]]:
         if parameter.u and name not in ("bandwidth", "max_input")
     ]
     whole = [("level", chain.level), ("strongest", chain.strongest), ("weakest", chain.weakest), ("snr", chain.snr_db)]
-    if terms.bandwidth_hz is None:
-        whole.append(("bandwidth", chain.bandwidth_hz))
+    whole.append(("bandwidth", chain.bandwidth_hz))
     if terms.source_temperature_k is None:
         whole.append(("source_temperature", chain.source_temperature_k))
     if chain.lineup is not None:
@@ -90,7 +99,7 @@ def _doubts(chain: Chain, terms: Terms) -> list[tuple[int, str, Parameter]]:
 def gains(copies: Copies) -> tuple[Array, Array | None, float]:
     """Gain of each stage [copies, stages]; the lineup's setting as wanted and the top of its range."""
     chain = copies.chain
-    gain = np.stack([own_gain(copies, i, stage) for i, stage in enumerate(chain.stages)], axis=-1)
+    gain = own_gains(copies)
     if chain.lineup is None:
         return gain, None, float("nan")
     names = chain.stage_names
@@ -104,48 +113,56 @@ def gains(copies: Copies) -> tuple[Array, Array | None, float]:
     return gain, wanted, top
 
 
-def own_gain(copies: Copies, index: int, stage: Stage) -> Array:
-    if stage.response is not None:
-        at = copies.frequencies[index]
-        f, g = stage.response.frequency_hz, stage.response.gain_db
-        return np.full(copies.count, np.interp(at, f, g, left=np.nan, right=np.nan))
-    return copies.column(index, "gain")
-
-
-def own_temperature(copies: Copies, index: int, gain: Array) -> tuple[Array, Array]:
-    """A stage's own noise temperature and the part of the noise ahead that its image lets in, over all copies."""
-    stage = copies.chain.stages[index]
-    image = np.zeros(copies.count)
-    if stage.oscillator is not None and "image_rejection" in stage.parameters:
-        image = image_from_rejection(copies.column(index, "image_rejection"))
-    if "nf" in stage.parameters:
-        return own_temperature_from_nf(copies.column(index, "nf"), image), image
-    if "nf_dsb" in stage.parameters:
-        return own_temperature_from_nf_dsb(copies.column(index, "nf_dsb"), image), image
-    if "noise_voltage" in stage.parameters:
-        voltage, current = copies.column(index, "noise_voltage"), copies.column(index, "noise_current", 0.0)
-        terminated = "termination" in stage.parameters
-        across = copies.column(index, "termination", copies.chain.impedance_ohm)
-        return own_temperature_from_noise_voltage(voltage, current, across, terminated=terminated), image
-    if stage.passive:
-        temperature = copies.column(index, "temperature", T0)
-        return own_temperature_passive(-gain[:, index], temperature), image
-    return np.full(copies.count, np.nan), image
-
-
-def limit(copies: Copies, gain: Array, name: str) -> Array:
-    """Input intercepts or compression points [copies, stages]; infinite where none is given."""
-    columns = []
+def own_gains(copies: Copies) -> Array:
+    """The gain of each stage at its frequency, [copies, stages]; nan outside of a response."""
+    gain = copies.matrix("gain")
     for index, stage in enumerate(copies.chain.stages):
-        output = "o" + name.removeprefix("i")
-        if name in stage.parameters:
-            columns.append(copies.column(index, name))
-        elif output in stage.parameters:
-            kept = 1.0 if name == "ip1db" else 0.0
-            columns.append(copies.column(index, output) - gain[:, index] + kept)
-        else:
-            columns.append(np.full(copies.count, np.inf))
-    return np.stack(columns, axis=-1)
+        if stage.response is not None:
+            f, g = stage.response.frequency_hz, stage.response.gain_db
+            gain[:, index] = np.interp(copies.frequencies[index], f, g, left=np.nan, right=np.nan)
+    return gain
+
+
+def own_temperatures(copies: Copies, gain: Array) -> tuple[Array, Array]:
+    """Own noise temperatures, and the part of the noise ahead that images let in, both [copies, stages]."""
+    stages = copies.chain.stages
+    image = np.zeros_like(gain)
+    mixers = np.array([stage.oscillator is not None for stage in stages]) & copies.given("image_rejection")
+    if mixers.any():
+        image = np.where(mixers, image_from_rejection(copies.matrix("image_rejection", np.inf)), 0.0)
+    own = np.full_like(gain, np.nan)
+    passive = np.array([stage.passive for stage in stages])
+    if passive.any():
+        own = np.where(passive, own_temperature_passive(-gain, copies.matrix("temperature", T0)), own)
+    for name, function in (("nf_dsb", own_temperature_from_nf_dsb), ("nf", own_temperature_from_nf)):
+        given = copies.given(name)
+        if given.any():
+            own = np.where(given, function(copies.matrix(name), image), own)
+    return _by_noise_voltage(copies, own), image
+
+
+def _by_noise_voltage(copies: Copies, own: Array) -> Array:
+    given = copies.given("noise_voltage") & ~copies.given("nf") & ~copies.given("nf_dsb")
+    if not given.any():
+        return own
+    voltage, current = copies.matrix("noise_voltage"), copies.matrix("noise_current", 0.0)
+    across = copies.matrix("termination", copies.chain.impedance_ohm)
+    terminated = copies.given("termination")
+    for each in (True, False):
+        found = own_temperature_from_noise_voltage(voltage, current, across, terminated=each)
+        own = np.where(given & (terminated == each), found, own)
+    return own
+
+
+def limits(copies: Copies, gain: Array, name: str) -> Array:
+    """Input intercepts or compression points [copies, stages]; infinite where none is given."""
+    output = "o" + name.removeprefix("i")
+    found = copies.matrix(name, np.inf)
+    given = copies.given(output) & ~copies.given(name)
+    if not given.any():
+        return found
+    kept = 1.0 if name == "ip1db" else 0.0
+    return np.where(given, copies.matrix(output) - gain + kept, found)
 
 
 def source_temperature(copies: Copies, terms: Terms) -> Array:

@@ -2,57 +2,83 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import partial
 
 import numpy as np
 
 from logbook.hardware import Chain
 from logbook.physics.cascade import Cascade, Stages, cascade
 from logbook.physics.constants import T0, Array
-from logbook.prediction.copies import Copies, gains, limit, own_temperature, source_temperature
-from logbook.prediction.data import Estimate, Node, Prediction, Terms
-from logbook.prediction.totals import Totals, first_unknown, headroom
-
-LIMITS = ("iip3", "iip2", "ip1db")
-
+from logbook.prediction.copies import Copies, gains, limits, own_temperatures, source_temperature
+from logbook.prediction.data import LIMITS, Node, Prediction, Terms
+from logbook.prediction.totals import Totals, headroom
 
 _OWN_TERMS = Terms()
 
 
-def predict(chain: Chain, terms: Terms = _OWN_TERMS) -> Prediction:
-    """Evaluate a chain once, all perturbed copies together.
+@dataclass(frozen=True, slots=True)
+class Evaluation:
+    """One vectorised cascade over all copies of a chain; it serves predictions in every bandwidth."""
+
+    copies: Copies
+    stages: Stages
+    done: Cascade
+    wanted: Array | None
+    top: float
+    source_k: Array
+
+
+def evaluate(chain: Chain, terms: Terms) -> Evaluation:
+    """The cascade of a chain at a frequency, with a source, over all perturbed copies together; see `predict`."""
+    copies = Copies(chain, terms)
+    gain, wanted, top = gains(copies)
+    temperatures, images = own_temperatures(copies, gain)
+    iip3, iip2, ip1db = (limits(copies, gain, name) for name in LIMITS)
+    stages = Stages(gain, temperatures, images, iip3, iip2, ip1db)
+    source = source_temperature(copies, terms)
+    return Evaluation(copies, stages, cascade(stages, source, chain.in_phase), wanted, top, source)
+
+
+def predict(chain: Chain, terms: Terms = _OWN_TERMS, evaluation: Evaluation | None = None) -> Prediction:
+    """What a chain is predicted to do under the terms; an evaluation made for their frequency and source is used.
 
     Gains in dB, levels in dBm, frequencies in Hz. Friis and intercept sums as `physics.cascade`; doubt by the law of
     propagation, first order, central differences. Source: JCGM 100:2008 5.1.
     """
-    copies = Copies(chain, terms)
-    gain, wanted, top = gains(copies)
-    temperatures, images = zip(*(own_temperature(copies, i, gain) for i in range(len(chain.stages))), strict=True)
-    limits = {name: limit(copies, gain, name) for name in LIMITS}
-    stages = Stages(
-        gain,
-        np.stack(temperatures, axis=-1),
-        np.stack(images, axis=-1),
-        limits["iip3"],
-        limits["iip2"],
-        limits["ip1db"],
-    )
-    source = source_temperature(copies, terms)
-    done = cascade(stages, source, chain.in_phase)
-    totals = Totals(copies, terms, stages, done, wanted, top).all()
+    made = evaluation if evaluation is not None else evaluate(chain, terms)
     return Prediction(
         chain=chain,
         terms=terms,
-        nodes=_nodes(copies, stages, done, totals, terms),
-        totals=totals,
-        source_share=float(done.source_share[0]),
-        source_temperature_k=float(source[0]),
-        ideal={name: ideal(chain, name) for name in LIMITS},
-        noise_unknown_from=first_unknown(chain, stages),
-        held_at=held(wanted, top, chain),
-        frequencies_hz=tuple(copies.frequencies),
-        nominal=nominal(stages),
+        totals=Totals(made.copies, terms, made.stages, made.done, made.wanted, made.top).all(),
+        source_share=float(made.done.source_share[0]),
+        source_temperature_k=float(made.source_k[0]),
+        held_at=held(made.wanted, made.top, chain),
+        frequencies_hz=tuple(made.copies.frequencies),
+        make_nominal=partial(nominal, made.stages),
+        make_nodes=partial(_nodes, made.copies, made.stages, made.done, terms),
     )
+
+
+class Predictor:
+    """Predictions, each made once. Chains are told apart by identity: they are frozen and shared between revisions."""
+
+    def __init__(self) -> None:
+        self._known: dict[tuple[int, Terms], Prediction] = {}
+        self._evaluated: dict[tuple[int, float | None, float | None], Evaluation] = {}
+
+    def __call__(self, chain: Chain, terms: Terms) -> Prediction:
+        """The prediction for a chain under the terms."""
+        terms = terms.for_chain(chain)
+        found = self._known.get((id(chain), terms))
+        if found is None:
+            key = (id(chain), terms.at_hz, terms.source_temperature_k)
+            evaluation = self._evaluated.get(key)
+            if evaluation is None:
+                evaluation = self._evaluated[key] = evaluate(chain, terms)
+            # The prediction keeps its chain, so that no other can take the identity it is known by.
+            found = self._known[(id(chain), terms)] = predict(chain, terms, evaluation)
+        return found
 
 
 def nominal(stages: Stages) -> Stages:
@@ -67,11 +93,6 @@ def nominal(stages: Stages) -> Stages:
     )
 
 
-def ideal(chain: Chain, name: str) -> tuple[str, ...]:
-    output = "o" + name.removeprefix("i")
-    return tuple(s.name for s in chain.stages if name not in s.parameters and output not in s.parameters)
-
-
 def held(wanted: Array | None, top: float, chain: Chain) -> str:
     if wanted is None or chain.lineup is None:
         return ""
@@ -80,9 +101,7 @@ def held(wanted: Array | None, top: float, chain: Chain) -> str:
     return "top" if wanted[0] > top else "bottom" if wanted[0] < low else ""
 
 
-def _nodes(
-    copies: Copies, stages: Stages, done: Cascade, totals: Mapping[str, Estimate], terms: Terms
-) -> tuple[Node, ...]:
+def _nodes(copies: Copies, stages: Stages, done: Cascade, terms: Terms) -> tuple[Node, ...]:
     chain = copies.chain
     level = chain.level.value if chain.level is not None else np.nan
     bandwidth = terms.bandwidth_hz or (chain.bandwidth_hz.value if chain.bandwidth_hz is not None else np.nan)

@@ -2,13 +2,15 @@
 
 from __future__ import annotations
 
+from functools import cached_property, partial
+
 import numpy as np
 
-from logbook.hardware import Chain
+from logbook.hardware import Chain, Parameter
 from logbook.physics.cascade import Cascade, Stages
 from logbook.physics.constants import T0, Array
 from logbook.prediction.copies import Copies
-from logbook.prediction.data import TOTAL_UNITS, Estimate, Terms
+from logbook.prediction.data import TOTAL_UNITS, Estimate, LazyTotals, Terms
 
 
 class Totals:
@@ -18,71 +20,112 @@ class Totals:
         self, copies: Copies, terms: Terms, stages: Stages, done: Cascade, wanted: Array | None, top: float
     ) -> None:
         self.copies, self.stages, self.done, self.wanted, self.top = copies, stages, done, wanted, top
-        chain = copies.chain
         self.gain = done.gain_db[..., -1]
         self.density = done.noise_dbm_per_hz[..., -1] - self.gain
-        given = terms.bandwidth_hz
-        self.bandwidth = (
-            np.full(copies.count, given) if given is not None else copies.scalar("bandwidth", chain.bandwidth_hz)
-        )
+        self.given_bandwidth = terms.bandwidth_hz
 
-    def all(self) -> dict[str, Estimate]:
-        """Every total that applies to the chain."""
-        found = {**self._noise(), **self._linearity()}
+    def all(self) -> LazyTotals:
+        """Every total that applies to the chain, computed when it is asked for."""
         chain = self.copies.chain
-        if chain.level is not None:
-            found["headroom"] = self._headroom("headroom", self.copies.scalar("level", chain.level))
-        if chain.strongest is not None:
-            strongest = self.copies.scalar("strongest", chain.strongest)
-            found["headroom_strongest"] = self._headroom("headroom_strongest", strongest)
-        if self.wanted is not None:
-            found["setting"] = self.copies.estimate("setting", self.wanted)
-            found["range_left"] = self.copies.estimate("range_left", self.top - self.wanted)
-        return {name: found[name] for name in TOTAL_UNITS if name in found}
-
-    def _noise(self) -> dict[str, Estimate]:
-        copies, chain = self.copies, self.copies.chain
-        unknown = first_unknown(chain, self.stages)
-        why = f"'{unknown}' has gain and no noise figure" if unknown else ""
-        no_gain = "a stage's gain is not known at this frequency"
-        wide = why or ("no bandwidth is given" if np.isnan(self.bandwidth[0]) else no_gain)
-        floor = self.density + 10 * np.log10(self.bandwidth)
-        nf = self.done.nf_db[..., -1]
-        found = {
-            "gain": copies.estimate("gain", self.gain, no_gain),
-            "nf": copies.estimate("nf", nf, why or no_gain),
-            "noise_temperature": copies.estimate("noise_temperature", T0 * (10 ** (nf / 10) - 1), why or no_gain),
-            "noise_floor": copies.estimate("noise_floor", floor, wide),
-            "noise_density": copies.estimate("noise_density", self.density, why or no_gain),
-            "output_noise": copies.estimate("output_noise", floor + self.gain, wide),
-        }
-        if chain.weakest is not None:
-            found["snr_weakest"] = copies.estimate("snr_weakest", copies.scalar("weakest", chain.weakest) - floor, wide)
+        found = {"gain": self._gain, "nf": self._nf, "noise_temperature": self._noise_temperature}
+        found |= {"noise_floor": self._noise_floor, "noise_density": self._noise_density}
+        found |= {"output_noise": self._output_noise}
+        for name in ("iip3", "oip3", "iip2", "oip2"):
+            found[name] = partial(self._intercept, name)
+        found |= {"ip1db": partial(self._compression, "ip1db"), "op1db": partial(self._compression, "op1db")}
+        found["sfdr"] = self._sfdr
         if chain.snr_db is not None:
-            found["sensitivity"] = copies.estimate("sensitivity", floor + copies.scalar("snr", chain.snr_db), wide)
+            found["sensitivity"] = self._sensitivity
+        for name, level in (("headroom", chain.level), ("headroom_strongest", chain.strongest)):
+            if level is not None:
+                found[name] = partial(self._headroom, name, level)
+        if chain.weakest is not None:
+            found["snr_weakest"] = self._snr_weakest
+        if self.wanted is not None:
+            found |= {"setting": self._setting, "range_left": self._range_left}
+        return LazyTotals({name: found[name] for name in TOTAL_UNITS if name in found})
+
+    @cached_property
+    def bandwidth(self) -> Array:
+        if self.given_bandwidth is not None:
+            return np.full(self.copies.count, self.given_bandwidth)
+        return self.copies.scalar("bandwidth", self.copies.chain.bandwidth_hz)
+
+    @cached_property
+    def floor(self) -> Array:
+        """Noise at the input in the bandwidth, dBm."""
+        floor: Array = self.density + 10 * np.log10(self.bandwidth)
+        return floor
+
+    @cached_property
+    def why(self) -> str:
+        """Why the noise is not known."""
+        unknown = first_unknown(self.copies.chain, self.stages)
+        return f"'{unknown}' has gain and no noise figure" if unknown else ""
+
+    @property
+    def wide(self) -> str:
+        """Why the noise in a bandwidth is not known."""
+        return self.why or ("no bandwidth is given" if np.isnan(self.bandwidth[0]) else _NO_GAIN)
+
+    def _gain(self) -> Estimate:
+        return self.copies.estimate("gain", self.gain, _NO_GAIN)
+
+    def _nf(self) -> Estimate:
+        return self.copies.estimate("nf", self.done.nf_db[..., -1], self.why or _NO_GAIN)
+
+    def _noise_temperature(self) -> Estimate:
+        kelvin = T0 * (10 ** (self.done.nf_db[..., -1] / 10) - 1)
+        return self.copies.estimate("noise_temperature", kelvin, self.why or _NO_GAIN)
+
+    def _noise_floor(self) -> Estimate:
+        return self.copies.estimate("noise_floor", self.floor, self.wide)
+
+    def _noise_density(self) -> Estimate:
+        return self.copies.estimate("noise_density", self.density, self.why or _NO_GAIN)
+
+    def _output_noise(self) -> Estimate:
+        return self.copies.estimate("output_noise", self.floor + self.gain, self.wide)
+
+    def _sensitivity(self) -> Estimate:
+        snr = self.copies.scalar("snr", self.copies.chain.snr_db)
+        return self.copies.estimate("sensitivity", self.floor + snr, self.wide)
+
+    def _snr_weakest(self) -> Estimate:
+        weakest = self.copies.scalar("weakest", self.copies.chain.weakest)
+        return self.copies.estimate("snr_weakest", weakest - self.floor, self.wide)
+
+    def _sfdr(self) -> Estimate:
         iip3 = self.done.iip3_dbm[..., -1]
-        sfdr = 2 / 3 * (iip3 - floor)
-        found["sfdr"] = copies.estimate("sfdr", sfdr, wide if np.isfinite(iip3[0]) else _no_stage_gives("third-order"))
-        return found
+        words = self.wide if np.isfinite(iip3[0]) else _no_stage_gives("third-order")
+        return self.copies.estimate("sfdr", 2 / 3 * (iip3 - self.floor), words)
 
-    def _linearity(self) -> dict[str, Estimate]:
-        copies, done = self.copies, self.done
-        found = {}
-        for name, values, said in (
-            ("iip3", done.iip3_dbm[..., -1], "third-order"),
-            ("iip2", done.iip2_dbm[..., -1], "second-order"),
-        ):
-            found[name] = copies.estimate(name, values, _no_stage_gives(said))
-            found["o" + name[1:]] = copies.estimate("o" + name[1:], values + self.gain, _no_stage_gives(said))
-        point = done.ip1db_dbm[..., -1]
-        words = "no stage gives a compression point"
-        found["ip1db"] = copies.estimate("ip1db", point, words)
-        found["op1db"] = copies.estimate("op1db", point + self.gain - 1, words)
-        return found
+    def _intercept(self, name: str) -> Estimate:
+        third = name.endswith("3")
+        values = (self.done.iip3_dbm if third else self.done.iip2_dbm)[..., -1]
+        said = _no_stage_gives("third-order" if third else "second-order")
+        return self.copies.estimate(name, values if name.startswith("i") else values + self.gain, said)
 
-    def _headroom(self, name: str, level: Array) -> Estimate:
-        room = headroom(self.stages, self.done, level)
-        return self.copies.estimate(name, room.min(axis=-1), "no stage gives a compression point")
+    def _compression(self, name: str) -> Estimate:
+        point = self.done.ip1db_dbm[..., -1]
+        return self.copies.estimate(name, point if name == "ip1db" else point + self.gain - 1, _NO_POINT)
+
+    def _headroom(self, name: str, level: Parameter) -> Estimate:
+        entering = self.copies.scalar(name.removeprefix("headroom_") if "_" in name else "level", level)
+        room = headroom(self.stages, self.done, entering)
+        return self.copies.estimate(name, room.min(axis=-1), _NO_POINT)
+
+    def _setting(self) -> Estimate:
+        assert self.wanted is not None
+        return self.copies.estimate("setting", self.wanted)
+
+    def _range_left(self) -> Estimate:
+        assert self.wanted is not None
+        return self.copies.estimate("range_left", self.top - self.wanted)
+
+
+_NO_GAIN = "a stage's gain is not known at this frequency"
+_NO_POINT = "no stage gives a compression point"
 
 
 def _no_stage_gives(order: str) -> str:

@@ -9,8 +9,7 @@ from logbook.compare.equal import in_rbw, why_not_comparable
 from logbook.compare.verdicts import GONE, NEW, NOT_COMPARABLE, NOT_STATED, SAME, Rules, delta_verdict
 from logbook.findings import CANCELLED, Delta
 from logbook.hardware import Chain
-from logbook.model import PREDICTED, Parts, Result, result_key, standard_uncertainty
-from logbook.physics.uncertainty import difference
+from logbook.model import PREDICTED, Parts, Result, result_key
 from logbook.prediction import Estimate, Prediction, Terms
 from logbook.quantities import Better, known_quantity
 from logbook.revision import Revision
@@ -47,9 +46,8 @@ def measured_delta(before: Result, after: Result, why: str, rules: Rules, to: st
     """The difference of two results of one key; levels of noise in the later reading's bandwidth."""
     rbw = after.conditions.rbw_hz
     old, new = in_rbw(before, rbw), after.value
-    parts = difference(after.parts, before.parts)
     # Where all that was stated cancels, what is fresh in each reading was not stated at all.
-    u = _left(parts, after.parts, before.parts) or None
+    u = u_of_difference(before.parts, after.parts) or None
     change = new - old
     stated = u is not None
     smallest = rules.smallest(after.quantity, after.unit, old)
@@ -107,13 +105,21 @@ def _bounded(
     return NOT_COMPARABLE, words + "; read it again behind less loss or with a quieter instrument"
 
 
-def _left(parts: Parts | None, after: Parts | None, before: Parts | None) -> float | None:
-    """u of a difference: None where nothing was stated, zero where all that was stated cancels."""
-    if parts is None:
+def u_of_difference(before: Parts | None, after: Parts | None) -> float | None:
+    """u of after - before: None where neither states any, zero where all that was stated cancels."""
+    if not before and not after:
         return None
-    scale = sqrt(sum(p * p for side in (after, before) for p in (side or {}).values()))
-    u = standard_uncertainty(parts) or 0.0
-    return 0.0 if u <= CANCELLED * scale else u
+    old, new = before or {}, after or {}
+    squares = scale = 0.0
+    for source, part in new.items():
+        other = old.get(source, 0.0)
+        squares += (part - other) ** 2
+        scale += part * part
+    for source, part in old.items():
+        scale += part * part
+        if source not in new:
+            squares += part * part
+    return 0.0 if squares <= CANCELLED**2 * scale else sqrt(squares)
 
 
 def measured_deltas(
@@ -201,7 +207,7 @@ def _predicted(
     better: Better = known.better if known else "neither"
     unit = (new or old).unit  # type: ignore[union-attr]
     old_parts, new_parts = (None if each is None else each.parts for each in (old, new))
-    u = _left(difference(new_parts, old_parts), new_parts, old_parts)
+    u = u_of_difference(old_parts, new_parts)
     if isnan(one):
         verdict, why = NEW, f"not known on {from_}: {old.words if old else 'not asked for'}"
     elif isnan(other):

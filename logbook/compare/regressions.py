@@ -6,9 +6,9 @@ from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import combinations
 
-from logbook.compare.deltas import measured_delta
+from logbook.compare.deltas import u_of_difference
 from logbook.compare.equal import in_rbw, why_not_comparable
-from logbook.compare.verdicts import MEETS, MISSES, NOT_COMPARABLE, SAME, WORSE, Rules
+from logbook.compare.verdicts import MEETS, MISSES, WORSE, Rules
 from logbook.findings import Accept, Delta, Regression, Spread, TargetVerdict
 from logbook.model import PREDICTED, Result
 from logbook.problems import ANY_FAULT, Problems, did_you_mean
@@ -110,9 +110,10 @@ def _worst_pair(repeated: Sequence[Result], rules: Rules) -> Spread | None:
     found: list[Spread] = []
     for first, second in combinations(repeated, 2):
         before = in_rbw(first, second.conditions.rbw_hz)
-        if abs(second.value - before) < rules.smallest(second.quantity, second.unit, before):
+        change = second.value - before
+        if abs(change) < rules.smallest(second.quantity, second.unit, before) or first.bound or second.bound:
             continue
-        delta = measured_delta(first, second, why_not_comparable(first, second), rules)
-        if delta.verdict not in (SAME, NOT_COMPARABLE) and delta.u is not None:
-            found.append(Spread(second.key, second.revision, first, second, delta.delta, delta.u, second.unit))
+        u = u_of_difference(first.parts, second.parts)
+        if u and abs(change) > rules.coverage * u and not why_not_comparable(first, second):
+            found.append(Spread(second.key, second.revision, first, second, change, u, second.unit))
     return max(found, key=lambda spread: abs(spread.difference) / spread.u, default=None)

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 from difflib import get_close_matches
+from typing import NamedTuple
 
 PROBLEM = "problem"
 CAUTION = "caution"
@@ -13,8 +14,7 @@ CAUTION = "caution"
 ANY_FAULT = "*"
 
 
-@dataclass(frozen=True, order=True, slots=True)
-class Place:
+class Place(NamedTuple):
     """A spot in a file; line and column count from 1, as editors do."""
 
     file: str
@@ -49,6 +49,7 @@ class Problems:
 
     def __init__(self) -> None:
         self._found: dict[Problem, None] = {}
+        self._named: dict[str, set[Place]] = {}
 
     def add(
         self, place: Place, code: str, message: str, hint: str = "", severity: str = PROBLEM, about: str = ""
@@ -60,10 +61,22 @@ class Problems:
         """Keep faults that were found elsewhere."""
         self._found.update(dict.fromkeys(problems))
 
+    def file_named(self, file: str, place: Place) -> None:
+        """Remember where a file is named, so that its own faults are shown there too."""
+        self._named.setdefault(file, set()).add(place)
+
+    def naming(self, file: str) -> Iterable[Place]:
+        """Where a file is named."""
+        return self._named.get(file, ())
+
     def within(self, file: str, first_line: int, last_line: int) -> list[Problem]:
-        """The faults on these lines of a file, in order."""
-        there = [p for p in self._found if p.place.file == file and first_line <= p.place.line <= last_line]
-        return sorted(there)
+        """The faults on these lines of a file, and those in the files that are named there, in order."""
+
+        def there(place: Place) -> bool:
+            return place.file == file and first_line <= place.line <= last_line
+
+        named = {other for other, places in self._named.items() if other != file and any(map(there, places))}
+        return sorted(p for p in self._found if there(p.place) or p.place.file in named)
 
     def drop(self, problems: Iterable[Problem]) -> None:
         """Forget faults that turned out to follow from others."""

@@ -60,7 +60,8 @@ def on_equal_terms(shown: Shown, known: KnownQuantity | None, bench: Bench | Non
 
 
 def _add(state: EqualTerms, label: str, amount: float) -> EqualTerms:
-    return replace(state, value=state.value + amount, corrections=(*state.corrections, (label, amount)))
+    corrections = (*state.corrections, (label, amount))
+    return EqualTerms(state.value + amount, state.parts, corrections, state.bound, state.notes)
 
 
 def _path(conditions: Conditions, bench: Bench | None) -> list[PathPart]:

@@ -3,8 +3,7 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
-from typing import Any
+from typing import Any, NamedTuple
 
 import yaml
 from yaml.events import (
@@ -21,8 +20,8 @@ from logbook.problems import Place, Problems
 from logbook.yaml_faults import Complaint, Spot, explain
 
 
-@dataclass(frozen=True, slots=True)
-class Scalar:
+# Tuples with names: a logbook has tens of thousands of nodes, and they are made in half the time.
+class Scalar(NamedTuple):
     """A text as written, `on`, `010` and `12:30` included; empty where nothing stands behind a key."""
 
     text: str
@@ -36,8 +35,7 @@ class Scalar:
         return Place(self.place.file, self.place.line, self.place.column + offset)
 
 
-@dataclass(frozen=True, slots=True)
-class Mapping:
+class Mapping(NamedTuple):
     """Keys with their values, in order; each key once."""
 
     pairs: tuple[tuple[Scalar, Node], ...]
@@ -52,8 +50,7 @@ class Mapping:
         return next((name.place for name, _ in self.pairs if name.text == key), self.place)
 
 
-@dataclass(frozen=True, slots=True)
-class Sequence:
+class Sequence(NamedTuple):
     """A list of nodes."""
 
     items: tuple[Node, ...]

@@ -208,6 +208,9 @@ def _predicted(
     unit = (new or old).unit  # type: ignore[union-attr]
     old_parts, new_parts = (None if each is None else each.parts for each in (old, new))
     u = u_of_difference(old_parts, new_parts)
+    if u == 0.0 and abs(other - one) > CANCELLED * abs(one):
+        # All that was stated is common to both: of what makes the difference nothing was stated.
+        u = None
     if isnan(one):
         verdict, why = NEW, f"not known on {from_}: {old.words if old else 'not asked for'}"
     elif isnan(other):

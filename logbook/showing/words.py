@@ -61,7 +61,10 @@ def decibels(value: float, decimals: int = 1) -> str:
 
 def percent(share: float) -> str:
     """A share as percent; an empty cell when not known."""
-    return "" if isnan(share) else f"{100 * share:.1f} %" if share < 0.1 else f"{100 * share:.0f} %"
+    if isnan(share):
+        return ""
+    shown = f"{100 * share:.1f} %" if share < 0.1 else f"{100 * share:.0f} %"
+    return "0.0 %" if shown == "-0.0 %" else shown
 
 
 def verdict(delta: Delta) -> Verdict:

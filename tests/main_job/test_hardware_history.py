@@ -180,6 +180,14 @@ def test_predicted_delta_owes_no_doubt_to_what_did_not_change() -> None:
     assert found.verdict == "changed"
 
 
+def test_predicted_delta_by_something_without_a_tolerance_is_not_certain() -> None:
+    """Everything stated cancels; the pad that makes the difference states nothing, and nothing is never zero."""
+    start = "name: lna, gain: 15 ± 1 dB, nf: 2 dB\n name: pad, loss: 3 dB"
+    book = book_of(entry("01-01", chain(start), revision="A"), entry("02-01", change("  - remove: pad"), revision="B"))
+    found = delta(book, "rx/gain", "B", "predicted")
+    assert (found.delta, found.u, found.why) == (pytest.approx(3), None, "doubt not stated")
+
+
 def test_from_names_another_parent() -> None:
     book = book_of(
         first(),

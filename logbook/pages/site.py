@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+from functools import partial
 
 from logbook.book import Book
 from logbook.findings import Todo
@@ -27,18 +29,32 @@ def revision_path(label: str) -> str:
     return f"revisions/{safe}.md"
 
 
-def generated_pages(book: Book) -> list[Page]:
-    """Every page that the logbook makes itself, but for home."""
-    pages = [
-        Page(revision_path(label), f"Revision {label}", tuple(revision_pieces(book, revision)))
+@dataclass(frozen=True, slots=True)
+class PagePlan:
+    """A page that the logbook makes itself: its path in the site's sources, its title, and what makes its pieces."""
+
+    path: str
+    title: str
+    make: Callable[[], list[Piece]]
+
+
+def page_plans(book: Book) -> list[PagePlan]:
+    """Every page that the logbook makes itself, but for home; nothing is made before it is asked for."""
+    plans = [
+        PagePlan(revision_path(label), f"Revision {label}", partial(revision_pieces, book, revision))
         for label, revision in book.revisions.items()
     ]
-    pages.append(Page("history.md", "History", tuple(history_pieces(book))))
-    pages.append(Page("targets.md", "Targets", tuple(target_pieces(book))))
-    pages.append(Page("open-items.md", "Open items", tuple(todo_pieces(book))))
-    pages.append(Page("benches.md", "Benches", tuple(bench_pieces(book))))
-    pages.append(Page("parts.md", "Parts", tuple(part_pieces(book))))
-    return pages
+    plans.append(PagePlan("history.md", "History", partial(history_pieces, book)))
+    plans.append(PagePlan("targets.md", "Targets", partial(target_pieces, book)))
+    plans.append(PagePlan("open-items.md", "Open items", partial(todo_pieces, book)))
+    plans.append(PagePlan("benches.md", "Benches", partial(bench_pieces, book)))
+    plans.append(PagePlan("parts.md", "Parts", partial(part_pieces, book)))
+    return plans
+
+
+def generated_pages(book: Book) -> list[Page]:
+    """Every page that the logbook makes itself, but for home, with its pieces."""
+    return [Page(plan.path, plan.title, tuple(plan.make())) for plan in page_plans(book)]
 
 
 def target_pieces(book: Book) -> list[Piece]:

@@ -3,14 +3,15 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from hashlib import sha256
 
 import numpy as np
 
 from logbook.book import Book, SourceFile
+from logbook.findings import Delta
 from logbook.model import Entry, Parts, Result
-from logbook.pages import block_pieces
+from logbook.pages import block_pieces, revision_path
 from logbook.pieces import Piece
 from logbook.revision import Revision
 
@@ -19,11 +20,11 @@ from logbook.revision import Revision
 _MARKED = frozenset({"chain", "change", "bench", "reading", "target", "accept", "todo"})
 
 
-Pages = Mapping[str, tuple[Piece, ...]]
+Pages = Mapping[str, Callable[[], list[Piece]]]
 
 
 def fingerprints(book: Book, sources: Mapping[str, SourceFile], pages: Pages) -> dict[str, str]:
-    """A fingerprint for each entry and page; `pages` are the pages that the logbook makes, with their pieces."""
+    """A fingerprint for each entry and page; `pages` are the pages that the logbook makes, with what makes them."""
     with np.printoptions(threshold=sys.maxsize):
         return _fingerprints(book, sources, pages)
 
@@ -35,8 +36,11 @@ def _fingerprints(book: Book, sources: Mapping[str, SourceFile], pages: Pages) -
         near = book.entries[max(0, index - 1) : index + 2]
         names = [(e.path, e.title, e.date.isoformat()) for e in near]
         found[entry.path] = _digest(found[entry.path], repr(names), marks.of_entry(entry))
-    for path, pieces in pages.items():
-        found[path] = _digest(found.get(path, ""), repr(pieces))
+    revisions = {revision_path(label): revision for label, revision in book.revisions.items()}
+    for path, make in pages.items():
+        # A page for each revision: making them all takes too long, too.
+        shown = marks.of_revision(revisions[path]) if path in revisions else repr(make())
+        found[path] = _digest(found.get(path, ""), shown)
     return found
 
 
@@ -58,6 +62,13 @@ def _of_result(result: Result) -> str:
     return f"{result.key} {result.revision} {result.value!r} {_of_parts(result.parts)} {read} {said}"
 
 
+def _of_delta(delta: Delta) -> str:
+    said = f"{delta.key} {delta.from_} {delta.before!r} {delta.after!r} {delta.delta!r} {delta.u!r}"
+    # Of what was predicted alone no budget is shown.
+    parts = (delta.parts_before, delta.parts_after) if delta.after_result is not None else ()
+    return f"{said} {delta.verdict} {delta.why} {[_of_parts(each) for each in parts]}"
+
+
 class _Marks:
     """The marks of revisions and results, each made once."""
 
@@ -66,6 +77,8 @@ class _Marks:
         self._chains: dict[int, str] = {}
         self._revisions: dict[int, str] = {}
         self._results: dict[str, list[str]] = {}
+        self._agreement: dict[str, list[str]] = {}
+        self._titles = {entry.path: f"{entry.path} {entry.title} {entry.date}" for entry in book.entries}
         self._collect()
 
     def _collect(self) -> None:
@@ -74,12 +87,12 @@ class _Marks:
             self._results.setdefault(result.entry, []).append(_of_result(result))
         for delta in self.book.findings.deltas:
             if delta.after_result is not None:
-                said = f"{delta.from_} {delta.before!r} {delta.delta!r} {delta.u!r} {delta.verdict} {delta.why}"
-                budget = f"{_of_parts(delta.parts_before)} {_of_parts(delta.parts_after)}"
-                self._results.setdefault(delta.after_result.entry, []).append(f"{said} {budget}")
+                self._results.setdefault(delta.after_result.entry, []).append(_of_delta(delta))
         for found in self.book.findings.agreement:
             said = f"{found.key} {found.measured!r} {found.u_measured!r} {found.predicted!r} {found.u_predicted!r}"
-            self._results.setdefault(found.result.entry, []).append(f"{said} {found.verdict} {found.why}")
+            said = f"{said} {found.verdict} {found.why} {found.result.conditions}"
+            self._results.setdefault(found.result.entry, []).append(said)
+            self._agreement.setdefault(found.revision, []).append(said)
 
     def of_revision(self, revision: Revision | None) -> str:
         """All that a page says of a revision."""
@@ -95,13 +108,19 @@ class _Marks:
         parent = self.book.revisions.get(revision.comes_from or "")
         chains = [self._chain(chain) for chain in revision.chains.values()]
         chains += [self._chain(chain) for chain in (parent.chains.values() if parent is not None else ())]
-        said = [f"{d.key} {d.before!r} {d.delta!r} {d.u!r} {d.verdict} {d.why}" for d in findings.deltas_to(label)]
+        said = [_of_delta(delta) for delta in findings.deltas_to(label)]
+        said += self._agreement.get(label, ())
         said += [f"{r.key} {r.accepted} {r.why}" for r in findings.regressions_of(label)]
         for each in (label, revision.comes_from or ""):
             said += [f"{v.target.key} {v.value!r} {v.verdict} {v.target.written}" for v in findings.targets_of(each)]
-        said += [f"{s.first.entry} {s.second.entry} {s.difference!r}" for s in findings.spreads if s.revision == label]
-        head = f"{label} {revision.comes_from} {revision.state} {revision.entries} {revision.made} {revision.broken}"
-        return _digest(head, *chains, *said)
+        for spread in findings.spreads:
+            if spread.revision == label:
+                said += [_of_result(spread.first), _of_result(spread.second), repr(spread.difference), repr(spread.u)]
+                said += [f"{spread.first.line} {spread.second.line}"]
+        entries = [self._titles[path] for path in revision.entries]
+        head = f"{label} {revision.comes_from} {revision.state} {revision.date} {revision.made} {revision.alternatives}"
+        plan = self.of_revision(revision.planned)
+        return _digest(repr(self.book.settings), head, plan, repr(sorted(revision.broken)), *entries, *chains, *said)
 
     def _chain(self, chain: object) -> str:
         known = self._chains.get(id(chain))

@@ -6,8 +6,7 @@ from collections.abc import Iterable
 from typing import Any
 
 from logbook.book import Book
-from logbook.pages import revision_path
-from logbook.pieces import Page
+from logbook.pages import PagePlan, revision_path
 
 _MONTHS = (
     "January February March April May June July August September October November December".split()  # noqa: SIM905
@@ -16,7 +15,7 @@ _MONTHS = (
 HOME = "index.md"
 
 
-def navigation(book: Book, pages: Iterable[Page], others: Iterable[str]) -> list[Any]:
+def navigation(book: Book, pages: Iterable[PagePlan], others: Iterable[str]) -> list[Any]:
     """The site's navigation, latest first within the entries; `others` are the paths of the user's ordinary pages."""
     revisions = [{f"Revision {label}": revision_path(label)} for label in reversed(book.revisions)]
     made = [{page.title: page.path} for page in pages if not page.path.startswith("revisions/")]

@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+from functools import partial
 from importlib.resources import files as package_files
 from pathlib import Path
+from threading import Lock, Thread
 from typing import Literal
 
 from jinja2 import Environment, FileSystemBytecodeCache
@@ -22,8 +25,8 @@ from logbook.failing import failure_words, failures
 from logbook.html import render
 from logbook.model import Entry
 from logbook.options import OptionError, Options, read_options
-from logbook.pages import block_pieces, generated_pages, head_pieces, home_pieces, revision_path, tail_pieces
-from logbook.pieces import Bars, Chart, Page, Piece
+from logbook.pages import PagePlan, block_pieces, head_pieces, home_pieces, page_plans, revision_path, tail_pieces
+from logbook.pieces import Bars, Chart, Piece
 from logbook.plots import draw
 from logbook.problems import Problems
 from logbook.results import results_json, schema_text
@@ -37,24 +40,27 @@ log = get_plugin_logger("logbook")
 ASSETS = "assets/logbook"
 STYLE = f"{ASSETS}/logbook.css"
 SEARCH_SHIM = f"{ASSETS}/iframe-worker.js"
+RESULTS = "data/results.json"
 
 
 class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
     """One instance lives through all rebuilds of `serve`."""
 
-    serving = False
+    serving = dirty = False
     cache_folder: Path | None = None
+    writing = Lock()
     options: Options
     book: Book
     cache: Cache
     entries: dict[str, Entry]
-    made: dict[str, tuple[Piece, ...]]
+    made: dict[str, Callable[[], list[Piece]]]
     site_files: Files
     marks: dict[str, str]
 
     def on_startup(self, *, command: Literal["build", "gh-deploy", "serve"], dirty: bool) -> None:
         """Defined, so that MkDocs keeps this instance between rebuilds."""
         self.serving = command == "serve"
+        self.dirty = self.serving and dirty
         self.marks = {}
 
     def on_config(self, config: MkDocsConfig) -> MkDocsConfig:
@@ -82,9 +88,9 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
         self.entries = {entry.path: entry for entry in self.book.entries}
         self.site_files = files
         # A page of that name which somebody wrote stands as it is.
-        pages = [page for page in generated_pages(self.book) if files.get_file_from_path(page.path) is None]
-        self.made = {page.path: page.pieces for page in pages}
-        self.made[HOME] = tuple(home_pieces(self.book))
+        pages = [plan for plan in page_plans(self.book) if files.get_file_from_path(plan.path) is None]
+        self.made = {plan.path: plan.make for plan in pages}
+        self.made[HOME] = partial(home_pieces, self.book)
         self._add_files(files, pages, config)
         _mend_encoding(files, sources, config)
         if config.nav is None:
@@ -96,7 +102,7 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
             log.warning(str(problem))
         return files
 
-    def _add_files(self, files: Files, pages: list[Page], config: MkDocsConfig) -> None:
+    def _add_files(self, files: Files, pages: list[PagePlan], config: MkDocsConfig) -> None:
         def add(path: str, content: str | bytes) -> None:
             if files.get_file_from_path(path) is None:
                 files.append(File.generated(config, path, content=content))
@@ -104,7 +110,8 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
         add(HOME, f"---\ntitle: {_quoted(config.site_name)}\n---\n\n# {config.site_name}\n")
         for page in pages:
             add(page.path, f"---\ntitle: {_quoted(page.title)}\n---\n\n# {page.title}\n\n{slot(WHOLE)}\n")
-        add("data/results.json", results_json(self.book))
+        if not self.dirty:
+            add(RESULTS, results_json(self.book))
         add("data/results.schema.json", schema_text())
         assets = package_files("logbook_mkdocs") / "assets"
         for asset in sorted(assets.iterdir(), key=lambda each: each.name):
@@ -139,8 +146,9 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
         if entry is not None:
             found = self._entry_pieces(entry)
         elif path in self.made:
-            found = {WHOLE: list(self.made[path])}
-            add_to_contents(page.toc, self.made[path])
+            pieces = self.made[path]()
+            found = {WHOLE: pieces}
+            add_to_contents(page.toc, pieces)
         else:
             return context
         page.content = fill(page.content or "", lambda name: self._html(found.get(name, []), page))
@@ -181,11 +189,21 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
         if not config.use_directory_urls and index.is_file():
             words = index.read_text(encoding="utf-8")
             index.with_suffix(".js").write_text(f"var __index = {words}", encoding="utf-8")
+        if self.dirty:
+            Thread(target=self._write_results, args=(self.book, Path(config.site_dir) / RESULTS), daemon=True).start()
         failed = failures(self.book, self.options.fail_on)
         if failed and self.serving:
             log.warning(failure_words(failed))
         elif failed:
             raise PluginError(f"{failure_words(failed)}; the site is in {config.site_dir}")
+
+    def _write_results(self, book: Book, file: Path) -> None:
+        """Under `serve --dirty`, while the page is looked at already: of a large logbook it takes a second."""
+        data = results_json(book)
+        with self.writing:
+            if book is self.book:
+                file.parent.mkdir(parents=True, exist_ok=True)
+                file.write_bytes(data)
 
 
 def _root(config: MkDocsConfig) -> Path:

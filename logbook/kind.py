@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
+from posixpath import dirname, join, normpath
 from typing import Any
 
 from logbook.bench import Bench
@@ -52,6 +53,10 @@ class Session:
     def fault(self, place: Place, code: str, message: str, hint: str = "", about: str = "") -> None:
         """Report a fault of this block; `about` names what was looked for and is not there."""
         self.problems.add(place, code, message, hint, about=about)
+
+    def file_path(self, file: str) -> str:
+        """The path within the logbook of a file that the entry names: where its own faults stand."""
+        return normpath(join(dirname(self.entry.path), file.replace("\\", "/")))
 
     def chain_name(self, values: Values) -> str | None:
         """The chain that `values` speak of: the one named, or the only one; None with a fault when unclear."""

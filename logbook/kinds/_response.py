@@ -17,7 +17,7 @@ def read_response(file: str, place: Place, session: Session) -> Response | None:
     if data is None:
         return None
     before = len(session.problems)
-    found = read_touchstone(data, file, session.problems)
+    found = read_touchstone(data, session.file_path(file), session.problems)
     if found is None or len(session.problems) > before:
         return None
     if found.s.shape[1] < 2:

@@ -29,6 +29,10 @@ _Y = {
     "noise": ("level", "density"),
 }
 _UNIT_DIMENSION = {"dB": "ratio", "dBm": "level", "dBm/Hz": "density"}
+_PLURAL = {"ratio": "decibels", "level": "levels", "density": "densities"}
+
+# Fewer points make no curve.
+_FEWEST = 3
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -41,36 +45,68 @@ class Read:
     notes: tuple[str, ...]
 
 
+@dataclass(frozen=True, slots=True, eq=False)
+class _Reference:
+    """The curve to subtract; `at_unit`: the path's loss is added already."""
+
+    x: Array
+    y: Array
+    unit: str
+    at_unit: bool
+
+
 def read_curve(values: Values, setting: Setting, session: Session) -> Read | None:
     """The curve that a block names; None with faults."""
     of = values["of"]
+    if "reference" in values and of in ("spectrum", "noise"):
+        message = f"A sweep of {with_article(of)} has no reference: its levels count as they are."
+        session.fault(values.place("reference"), "reference", message, "Leave it out, or sweep a 'response'.")
+        return None
     trace = _trace(values, session)
     reference = _reference(values, session) if "reference" in values else None
     if trace is None or ("reference" in values and reference is None):
         return None
     if _UNIT_DIMENSION.get(trace.y_unit) not in _Y[of]:
-        message = f"A sweep of a {of} needs {' or '.join(_Y[of])}s over frequency; this one is in {trace.y_unit}."
+        needed = " or ".join(_PLURAL[each] for each in _Y[of])
+        message = f"A sweep of {with_article(of)} needs {needed} over frequency; this one is in {trace.y_unit}."
         session.fault(values.place("y" if "y" in values else "of"), "dimension", message)
         return None
-    return _noise(trace, values, setting, session) if of == "noise" else _level(trace, reference, values, setting)
+    if of == "noise":
+        return _noise(trace, values, setting, session)
+    return _level(trace, setting) if reference is None else _relative(trace, reference, values, setting, session)
 
 
-def _level(trace: Trace, reference: tuple[Array, Array, str] | None, values: Values, setting: Setting) -> Read:
-    y, unit, calibrated, notes = trace.y, trace.y_unit, trace.y_unit == "dB", []
-    x = trace.x
-    if reference is not None:
-        y = less_reference(x, y, reference[0], reference[1])
-        known = np.isfinite(y)
-        if not known.all():
-            notes.append("the reference does not cover the whole sweep; only what it covers is used")
-            x, y = x[known], y[known]
-        unit, calibrated = "dB", True
+def with_article(of: str) -> str:
+    """`noise`, `a response`."""
+    return of if of == "noise" else f"a {of}"
+
+
+def _relative(trace: Trace, reference: _Reference, values: Values, setting: Setting, session: Session) -> Read | None:
+    """A curve less its reference, dB; None with a fault where the two have nothing in common."""
+    place, named = values.place("reference"), values["reference"]
+    if reference.unit != trace.y_unit:
+        message = f"This sweep is in {trace.y_unit} and its reference '{named}' in {reference.unit}."
+        session.fault(place, "reference", message, "A reference is swept with the same set-up and the same scale.")
+        return None
+    own = trace.y + (_path_loss(setting) if reference.at_unit and trace.y_unit == "dBm" else 0.0)
+    y = less_reference(trace.x, own, reference.x, reference.y)
+    known = np.isfinite(y)
+    if known.sum() < _FEWEST:
+        message = f"The reference '{named}' covers {known.sum()} points of this sweep; {_FEWEST} are needed at least."
+        session.fault(place, "reference", message)
+        return None
+    notes = () if known.all() else ("the reference does not cover the whole sweep; only what it covers is used",)
     u = setting.bench.linearity_u if setting.bench is not None else None
-    curve = Curve(x, y, unit, u, calibrated)
-    if unit != "dBm":
-        return Read(curve, curve, 0.0, tuple(notes))
-    offset = _path_loss(setting)
-    return Read(curve, Curve(x, y + offset, unit), offset, tuple(notes))
+    curve = Curve(trace.x[known], y[known], "dB", u)
+    return Read(curve, curve, 0.0, notes)
+
+
+def _level(trace: Trace, setting: Setting) -> Read:
+    unit = trace.y_unit
+    u = setting.bench.linearity_u if setting.bench is not None else None
+    curve = Curve(trace.x, trace.y, unit, u, unit == "dB")
+    offset = _path_loss(setting) if unit == "dBm" else 0.0
+    return Read(curve, Curve(trace.x, trace.y + offset, unit), offset, ())
 
 
 def _path_loss(setting: Setting) -> float:
@@ -122,7 +158,7 @@ def _points(values: Values, session: Session) -> Trace | None:
         session.fault(place, "points", message, "Such as [21.390 MHz, -63.1 dB].")
         return None
     x = np.array([point.value for point, _ in points])
-    if len(points) < 3 or not np.all(np.diff(x) > 0):
+    if len(points) < _FEWEST or not np.all(np.diff(x) > 0):
         session.fault(place, "points", "The points' frequencies must rise, and three are needed at least.")
         return None
     return Trace(values["name"], "", x, "Hz", np.array([y.value for _, y in points]), units.pop())
@@ -138,7 +174,7 @@ def _touchstone(file: str, values: Values, session: Session) -> Trace | None:
     """One S-parameter of a Touchstone file, in dB: S21, or S11 of one port, unless `y` names another."""
     place = values.place("file")
     data = session.read_file(file, place)
-    found = None if data is None else read_touchstone(data, file, session.problems)
+    found = None if data is None else read_touchstone(data, session.file_path(file), session.problems)
     if found is None:
         return None
     ports = found.s.shape[1]
@@ -152,19 +188,24 @@ def _touchstone(file: str, values: Values, session: Session) -> Trace | None:
         session.fault(values.place("y"), "parameter", message, hint)
         return None
     y = np.asarray(magnitude_db(found, out, into), dtype=np.float64)
-    return Trace(name, file, found.frequency_hz, "Hz", np.where(np.isfinite(y), y, nan), "dB")
+    known = np.isfinite(y)
+    if known.sum() < _FEWEST:
+        message = f"'{file}' has {known.sum()} points where {name} is not zero; {_FEWEST} are needed at least."
+        session.fault(place, "points", message)
+        return None
+    return Trace(name, file, found.frequency_hz, "Hz", np.where(known, y, nan), "dB")
 
 
-def _reference(values: Values, session: Session) -> tuple[Array, Array, str] | None:
+def _reference(values: Values, session: Session) -> _Reference | None:
     """The curve to subtract: an earlier sweep by its name, or a file."""
     named = values["reference"]
     earlier = [each.outcome.data for each in session.earlier.get(("sweep", named), ())]
     sweeps = [each for each in earlier if isinstance(each, Sweep)]
     if sweeps:
-        return sweeps[-1].x, sweeps[-1].y, named
+        return _Reference(sweeps[-1].x, sweeps[-1].y, sweeps[-1].unit, at_unit=True)
     if "." in named:
         trace = _reference_file(named, values, session)
-        return None if trace is None else (trace.x, trace.y, named)
+        return None if trace is None else _Reference(trace.x, trace.y, trace.y_unit, at_unit=False)
     known = [name for kind, name in session.earlier if kind == "sweep" and name]
     message = f"No sweep '{named}' was made up to here."
     hint = did_you_mean(named, known) if known else "Name an earlier sweep, or a file."

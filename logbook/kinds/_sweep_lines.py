@@ -39,11 +39,11 @@ def find_lines(
     top = strongest(lines)
     if top is None:
         return SpectrumLines((), {}, (f"no line stands above {threshold:.1f} dBm",))
-    nominal = carrier_hz if carrier_hz is not None else _rounded(float(lines.frequency[top]), width_hz)
+    known = sorted(earlier)
+    nominal = carrier_hz if carrier_hz is not None else _settled(float(lines.frequency[top]), width_hz, known)
     orders = harmonic_orders(lines.frequency, nominal, width_hz, width_hz)
     carrier = next((float(lines.level[i]) for i in range(len(orders)) if orders[i] == 1), None)
     notes = [] if carrier is not None else [f"no line stands at the carrier, {show_frequency(nominal)}"]
-    known = sorted(earlier)
     found: list[Found] = []
     kept: dict[str, float] = {}
     loudest = sorted(range(len(orders)), key=lambda i: -float(lines.level[i]))[:_MOST]

@@ -65,6 +65,7 @@ class Curve:
 
 Report = Callable[[Curve, tuple[float, ...]], Iterable[Found]]
 
+_AT_EDGE = "the highest point is the sweep's end; there may be more beyond"
 _SHORT = "the sweep does not reach so far down on both sides"
 
 
@@ -75,16 +76,19 @@ def _level(db: float) -> str:
 def peak(curve: Curve, _: tuple[float, ...]) -> Iterable[Found]:
     """Frequency of the peak, by the parabola through its three highest points."""
     top = find_peak(curve.x, curve.y)
-    words = "the highest point is the sweep's end; there may be more beyond" if top.at_edge else ""
+    words = _AT_EDGE if top.at_edge else ""
     mark = ((top.x, top.y, f"peak {show_frequency(float(f'{top.x:.7g}'))}"),)
     yield Found("peak_frequency", nan if top.at_edge else top.x, "Hz", words=words, better="neither", marks=mark)
 
 
 def insertion_loss(curve: Curve, _: tuple[float, ...]) -> Iterable[Found]:
     """The loss at the peak."""
-    words = "" if curve.calibrated else "levels without a reference sweep say nothing of the loss"
     top = find_peak(curve.x, curve.y)
-    yield Found("insertion_loss", -top.y if curve.calibrated else nan, "dB", curve.u_ratio, words=words)
+    words = _AT_EDGE if top.at_edge else ""
+    if not curve.calibrated:
+        words = "levels without a reference sweep say nothing of the loss"
+    # The sign of a zero would show.
+    yield Found("insertion_loss", nan if words else 0.0 - top.y, "dB", curve.u_ratio, words=words)
 
 
 def centre(curve: Curve, levels: tuple[float, ...]) -> Iterable[Found]:
@@ -196,10 +200,15 @@ def power(curve: Curve, band: tuple[float, ...]) -> Iterable[Found]:
 
 
 def spot(curve: Curve, frequencies: tuple[float, ...]) -> Iterable[Found]:
-    """Noise density at each frequency, over the ten points about it."""
-    span = 10 * float(np.median(np.diff(curve.x)))
+    """Noise density at each frequency, over the ten points about it, fewer near the sweep's ends."""
+    x = curve.x
+    widest = 10 * float(np.median(np.diff(x)))
     for at in frequencies:
-        value = spot_density(curve.x, curve.y, curve.noise_bandwidth_hz, at, span)
+        reach = min(at - x[0] + (x[1] - x[0]) / 2, x[-1] - at + (x[-1] - x[-2]) / 2)
+        # A little less than what reaches to the end, so that rounding does not carry it beyond.
+        span = min(widest, 2 * float(reach) * (1 - 1e-9))
+        inside = x[0] <= at <= x[-1]
+        value = spot_density(x, curve.y, curve.noise_bandwidth_hz, at, span) if inside else nan
         mark = ((at, float(value_at(curve.x, curve.y, at)), show_frequency(at)),)
         yield Found("noise_density", value, "dBm/Hz", curve.u_db, at, _outside(curve, at, value), marks=mark)
 

@@ -35,7 +35,7 @@ def _column(said: str | None) -> str | int | None:
 def read_columns(file: str, place: Place, session: Session) -> Columns | None:
     """The table in a CSV file of the logbook; None with faults."""
     data = session.read_file(file, place)
-    return None if data is None else read_table(data, file, session.problems)
+    return None if data is None else read_table(data, session.file_path(file), session.problems)
 
 
 def trace_of(values: Values, x: tuple[str, ...], y: tuple[str, ...], session: Session) -> Trace | None:

@@ -185,7 +185,8 @@ def _rules(values: Values, session: Session) -> list[Rule]:
         place = values.place("rule")
         if named.endswith((".yml", ".yaml")):
             data = session.read_file(named, place)
-            rule = None if data is None else read_rule(decode(data, named, session.problems), named, session.problems)
+            path = session.file_path(named)
+            rule = None if data is None else read_rule(decode(data, path, session.problems), path, session.problems)
         else:
             rule = shipped_rules().get(named)
             if rule is None:

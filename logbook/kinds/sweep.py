@@ -12,7 +12,7 @@ import numpy as np
 from logbook.fields import Asked, Field, Reader, choice, many, pair, quantity, text
 from logbook.kind import Kind, Outcome, Session
 from logbook.kinds._measured import Setting, derived, fresh, measured, not_on_a_plan, setting_of
-from logbook.kinds._sweep_curve import Read, read_curve
+from logbook.kinds._sweep_curve import Read, read_curve, with_article
 from logbook.kinds._sweep_lines import find_lines
 from logbook.kinds._sweep_reports import REPORTS, report
 from logbook.kinds._trace import axis
@@ -31,6 +31,9 @@ SORTS = ("bandpass", "response", "spectrum", "noise")
 _WORDS: dict[str, tuple[str, int]] = {
     word: (dimension, least) for sort in REPORTS.values() for word, (_, dimension, least) in sort.items()
 } | {"lines": ("level", 0)}
+
+# How many numbers a word takes that does not take any number of them.
+_EXACTLY = {"shape_factor": 2, "flatness": 2, "density": 2, "power": 2, "ripple": 1, "lines": 1}
 
 _SUCH = "Such as '- bandwidth: [3 dB, 60 dB]' or '- centre'."
 
@@ -65,6 +68,11 @@ def _checked(word: str, where: Node, numbers: Node | None, asked: Asked) -> tupl
     positive = dimension in ("ratio", "frequency")
     reader = quantity(dimension, positive=positive, instead="Give it as so many dB below the peak.")
     read: Any = many(reader)(numbers, Asked(word, asked.problems))
+    exactly = _EXACTLY.get(word)
+    if read is not None and exactly not in (None, len(read)):
+        message = f"'{word}' takes {('one number', 'two numbers')[exactly - 1]}, not {len(read)}."
+        asked.fault(numbers.place, "report", message)
+        return None
     return None if read is None else (Request(word, tuple(each.value for each in read), where.place),)
 
 
@@ -156,7 +164,7 @@ def _reports_fit(values: Values, session: Session) -> bool:
     known = [*REPORTS.get(of, {}), *(["lines"] if of == "spectrum" else [])]
     wrong = [request for request in values.get("report", ()) if request.word not in known]
     for request in wrong:
-        message = f"A sweep of a {of} does not report '{request.word}'; it can report {', '.join(known)}."
+        message = f"A sweep of {with_article(of)} does not report '{request.word}'; it can report {', '.join(known)}."
         session.fault(request.place, "report", message)
     return not wrong
 

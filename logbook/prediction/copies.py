@@ -6,6 +6,7 @@ import numpy as np
 import numpy.typing as npt
 
 from logbook.hardware import Chain, Parameter
+from logbook.model import Source
 from logbook.physics.constants import T0, Array
 from logbook.physics.noise import (
     galactic_temperature,
@@ -52,9 +53,13 @@ class Copies:
         found[:] = values
         for index, k, u in self._shifts.get(name, ()):
             if index >= 0:
-                found[1 + 2 * k, index] += u
-                found[2 + 2 * k, index] -= u
+                self._move(found[:, index], k, u)
         return found
+
+    def _move(self, column: Array, k: int, u: float) -> None:
+        """Let the k-th source of doubt move what it moves: up in one copy, down in the next."""
+        column[1 + 2 * k] += u
+        column[2 + 2 * k] -= u
 
     def given(self, name: str) -> npt.NDArray[np.bool_]:
         """Which stages give a parameter, [stages]."""
@@ -65,8 +70,7 @@ class Copies:
         found = np.full(self.count, default if parameter is None else parameter.value)
         for index, k, u in self._shifts.get(name, ()):
             if index < 0:
-                found[1 + 2 * k] += u
-                found[2 + 2 * k] -= u
+                self._move(found, k, u)
         return found
 
     def estimate(self, name: str, values: Array, words: str = "") -> Estimate:
@@ -78,6 +82,29 @@ class Copies:
         halves = (values[1::2] - values[2::2]) / 2
         parts = {s: half for s, half in zip(self.sources, halves.tolist(), strict=True) if abs(half) > 1e-12}
         return Estimate(nominal, unit, parts or None)
+
+
+class Draws(Copies):
+    """The same with copies drawn at random: copy 0 nominal, in all others every source moved by its own draw.
+
+    Normal distributions, the same draws at every run. Source: JCGM 101:2008 5, 7.
+    """
+
+    def __init__(self, chain: Chain, terms: Terms, draws: int) -> None:
+        super().__init__(chain, terms)
+        self.count = 1 + draws
+        self._drawn = np.random.default_rng(101).standard_normal((len(self.sources), draws))
+
+    def _move(self, column: Array, k: int, u: float) -> None:
+        column[1:] += u * self._drawn[k]
+
+    def estimate(self, name: str, values: Array, words: str = "") -> Estimate:
+        """A total's nominal value, with the standard deviation of all draws as its doubt."""
+        unit = TOTAL_UNITS[name]
+        if not np.isfinite(values).all():
+            return Estimate(float("nan"), unit, None, words or "not known in all draws")
+        spread = float(np.std(values[1:], ddof=1))
+        return Estimate(float(values[0]), unit, {Source("chain", self.chain.name, "", "all draws"): spread})
 
 
 def _doubts(chain: Chain, terms: Terms) -> list[tuple[int, str, Parameter]]:

@@ -10,8 +10,8 @@ import numpy as np
 from logbook.hardware import Chain
 from logbook.physics.cascade import Cascade, Stages, cascade
 from logbook.physics.constants import T0, Array
-from logbook.prediction.copies import Copies, gains, limits, own_temperatures, source_temperature
-from logbook.prediction.data import LIMITS, Node, Prediction, Terms
+from logbook.prediction.copies import Copies, Draws, gains, limits, own_temperatures, source_temperature
+from logbook.prediction.data import LIMITS, LazyTotals, Node, Prediction, Terms
 from logbook.prediction.totals import Totals, headroom
 
 _OWN_TERMS = Terms()
@@ -31,13 +31,40 @@ class Evaluation:
 
 def evaluate(chain: Chain, terms: Terms) -> Evaluation:
     """The cascade of a chain at a frequency, with a source, over all perturbed copies together; see `predict`."""
-    copies = Copies(chain, terms)
+    return _evaluate(Copies(chain, terms), chain, terms)
+
+
+def _evaluate(copies: Copies, chain: Chain, terms: Terms) -> Evaluation:
     gain, wanted, top = gains(copies)
     temperatures, images = own_temperatures(copies, gain)
     iip3, iip2, ip1db = (limits(copies, gain, name) for name in LIMITS)
     stages = Stages(gain, temperatures, images, iip3, iip2, ip1db)
     source = source_temperature(copies, terms)
     return Evaluation(copies, stages, cascade(stages, source, chain.in_phase), wanted, top, source)
+
+
+# Above this standard uncertainty of an input (dB) first order is an approximation.
+FIRST_ORDER_UP_TO_DB = 1.5
+_DRAWS = 20_000
+
+
+def wide_inputs(chain: Chain) -> list[str]:
+    """The inputs whose doubt is above 1.5 dB, in words: first order is then an approximation."""
+    return [
+        f"{stage.name} {name.replace('_', ' ')}"
+        for stage in chain.stages
+        for name, parameter in stage.parameters.items()
+        if name in _IN_DECIBELS and (parameter.u or 0.0) > FIRST_ORDER_UP_TO_DB
+    ]
+
+
+_IN_DECIBELS = frozenset("gain nf nf_dsb image_rejection iip3 oip3 iip2 oip2 ip1db op1db".split())  # noqa: SIM905
+
+
+def by_monte_carlo(chain: Chain, terms: Terms = _OWN_TERMS) -> LazyTotals:
+    """The totals with their doubt from 20,000 random draws of all inputs. Source: JCGM 101:2008."""
+    made = _evaluate(Draws(chain, terms, _DRAWS), chain, terms)
+    return Totals(made.copies, terms, made.stages, made.done, made.wanted, made.top).all()
 
 
 def predict(chain: Chain, terms: Terms = _OWN_TERMS, evaluation: Evaluation | None = None) -> Prediction:

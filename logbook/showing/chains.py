@@ -24,13 +24,13 @@ from logbook.pieces import (
     Table,
     Text,
 )
-from logbook.prediction import Prediction, Terms
+from logbook.prediction import FIRST_ORDER_UP_TO_DB, Prediction, Terms, by_monte_carlo, wide_inputs
 from logbook.quantity_display import show_frequency, show_value
 from logbook.showing.cautions import power_caution
 from logbook.showing.deltas import deltas_table
 from logbook.showing.level_check import level_check
 from logbook.showing.plans import plan_pieces
-from logbook.showing.words import decibels, percent, quantity_words
+from logbook.showing.words import decibels, difference_unit, percent, quantity_words
 
 
 def show_chain(block: Block, outcome: Outcome, view: View) -> list[Piece]:
@@ -77,7 +77,7 @@ def chain_pieces(prediction: Prediction, before: Chain | None) -> list[Piece]:
     pieces: list[Piece] = [diagram(prediction, before), *warnings(prediction)]
     if prediction.chain.level is not None:
         pieces.append(level_plan(prediction))
-    pieces += [totals_table(prediction), cascade_table(prediction), *level_check(prediction)]
+    pieces += [totals_table(prediction), *first_order(prediction), cascade_table(prediction), *level_check(prediction)]
     shares = shares_picture(prediction)
     if shares is not None:
         pieces.append(shares)
@@ -146,6 +146,26 @@ def _input_noise(prediction: Prediction) -> float:
     chain, terms = prediction.chain, prediction.terms
     width = terms.bandwidth_hz or (chain.bandwidth_hz.value if chain.bandwidth_hz is not None else float("nan"))
     return float(noise_power_dbm(density_from_temperature(prediction.source_temperature_k), width))
+
+
+def first_order(prediction: Prediction) -> list[Piece]:
+    """Where an input's doubt is too wide for first order: the totals' doubt both ways, and which one is used."""
+    wide = wide_inputs(prediction.chain)
+    if not wide:
+        return []
+    drawn = by_monte_carlo(prediction.chain, prediction.terms)
+    rows: list[tuple[Line, ...]] = []
+    for name, total in prediction.totals.items():
+        other = drawn[name]
+        if total.u and other.u:
+            unit = difference_unit(total.unit)
+            rows.append((quantity_words(name), show_value(total.u, unit), show_value(other.u, unit)))
+    words = (
+        f"The doubt of {', '.join(wide)} is above {FIRST_ORDER_UP_TO_DB:g} dB, where propagation to first order is an "
+        "approximation. Verdicts use first order; beside it stands the same by 20,000 random draws."
+    )
+    head = ("total", "u, first order", "u, by Monte Carlo")
+    return [Note(words), Table(head, tuple(rows), "Doubt of the totals, both ways", frozenset({1, 2}))]
 
 
 def totals_table(prediction: Prediction) -> Table:

@@ -10,6 +10,10 @@ from logbook.terminal.lines import clean, line_text, padded, width_of, wrapped
 from logbook.terminal.tables import table_lines
 
 
+# Columns that a card's words should have beside its title and figure.
+_LEAST_ROOM = 20
+
+
 @dataclass(frozen=True, slots=True)
 class Signs:
     """What lines are drawn with."""
@@ -61,13 +65,17 @@ def _branch(start: Branch, depth: int, signs: Signs) -> Iterator[str]:
 
 
 def cards_lines(cards: Cards, width: int, signs: Signs) -> list[str]:
-    """A line for each card."""
+    """A line for each card; where that leaves too little room for its words, its title stands above them."""
     titles = max((width_of(line_text(card.title)) for card in cards.cards), default=0)
     figures = max((width_of(clean(card.figure)) for card in cards.cards), default=0)
     lines = []
     for card in cards.cards:
         words = [line_text(card.verdict) if card.verdict is not None else "", line_text(card.line)]
-        start = f"{padded(line_text(card.title), titles)}  {padded(clean(card.figure), figures, right=True)}  "
+        figure = f"{padded(clean(card.figure), figures, right=True)}  "
+        start = f"{padded(line_text(card.title), titles)}  {figure}"
+        if width - width_of(start) < _LEAST_ROOM:
+            lines += wrapped(line_text(card.title), width)
+            start = f"    {figure}"
         lines += wrapped(", ".join(filter(None, words)), width, start, " " * width_of(start))
     return lines
 

@@ -98,13 +98,20 @@ def shares_pieces(found: Agreement) -> list[Piece]:
     """Where a difference between measurement and prediction could come from."""
     if not found.shares:
         return []
-    rows: list[tuple[Line, ...]] = [
-        (s.source.words, percent(s.share), show_delta(s.shift, s.unit)) for s in found.shares
-    ]
+    weighty = [s for s in found.shares if s.share >= _WEIGHTY] or list(found.shares[:1])
+    rows: list[tuple[Line, ...]] = [(s.source.words, percent(s.share), show_delta(s.shift, s.unit)) for s in weighty]
     what = result_words(found.result.quantity, found.result.at_hz, found.result.name)
     caption = f"Where the difference in {what} could come from"
     head = ("stage and parameter", "share of the prediction's variance", "most likely shift")
-    return [Table(head, tuple(rows), caption, frozenset({1, 2}))]
+    pieces: list[Piece] = [Table(head, tuple(rows), caption, frozenset({1, 2}))]
+    rest = [s.source.words for s in found.shares if s not in weighty]
+    if rest:
+        pieces.append(Text((Muted(f"Under {percent(_WEIGHTY)} each: {', '.join(rest)}."))))
+    return pieces
+
+
+# Shares below this are named, not listed.
+_WEIGHTY = 0.005
 
 
 def revision_change(label: str, parent: str | None) -> tuple[Span, ...]:

@@ -106,7 +106,7 @@ def shares_pieces(found: Agreement) -> list[Piece]:
     pieces: list[Piece] = [Table(head, tuple(rows), caption, frozenset({1, 2}))]
     rest = [s.source.words for s in found.shares if s not in weighty]
     if rest:
-        pieces.append(Text((Muted(f"Under {percent(_WEIGHTY)} each: {', '.join(rest)}."))))
+        pieces.append(Text(Muted(f"Under {percent(_WEIGHTY)} each: {', '.join(rest)}.")))
     return pieces
 
 

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from logbook.hardware import Parameter
 from logbook.model import Source
 from logbook.physics.constants import Array
-from logbook.physics.detector import DetectorFit, level_from_output
+from logbook.physics.detector import DetectorFit, level_from_output, line_parts
 from logbook.quantity import Quantity
 from logbook.quantity_display import show_value
 
@@ -25,7 +25,7 @@ class Steps:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Calibration:
-    """A detector's line as of `since`; levels in dBm, output in V or divisions.
+    """A detector's line as of `since`, by the staircase at `written` (entry and line); levels in dBm, output in V or divisions.
 
     `drive` is the accuracy of the source that stepped it, common to all that is read through it. `lowest` and
     `highest` are the levels between which it was stepped, `window_dbm` those between which the line was fitted.
@@ -33,6 +33,7 @@ class Calibration:
 
     name: str
     since: str
+    written: str
     fit: DetectorFit
     unit: str
     dimension: str
@@ -45,12 +46,16 @@ class Calibration:
     def level(self, output: Quantity, departure: Source) -> tuple[float, dict[Source, float], tuple[str, ...]]:
         """The level of an output in dBm, its doubt by source (dB) without that of the output, and notes."""
         read = level_from_output(self.fit, output.value)
-        line = Source("bench", self.name, "detector", "line", self.since)
-        parts = {line: read.u_line_db, departure: read.u_scatter_db}
+        height, slope = line_parts(self.fit, output.value)
+        parts = {self._line("height"): height, self._line("slope"): slope, departure: read.u_scatter_db}
         if self.drive is not None and self.drive.u:
             parts[self.drive.source] = self.drive.u
         notes: tuple[str, ...] = ()
         if not self.lowest_dbm <= read.level_dbm <= self.highest_dbm:
             span = f"{show_value(self.lowest_dbm, 'dBm')} to {show_value(self.highest_dbm, 'dBm')}"
             notes = (f"outside the range in which detector {self.name} was stepped ({span})",)
-        return read.level_dbm, {source: part for source, part in parts.items() if part > 0}, notes
+        return read.level_dbm, {source: part for source, part in parts.items() if part}, notes
+
+    def _line(self, what: str) -> Source:
+        """Another staircase of the same detector, be it on the same day, is another line with errors of its own."""
+        return Source("bench", self.name, "detector line's", what, f"{self.since} ({self.written})")

@@ -65,6 +65,7 @@ def calculate(block: Block, session: Session) -> Outcome:
     detector = Calibration(
         name=values["name"],
         since=session.entry.date.isoformat(),
+        written=f"{session.entry.path}:{values.start.line}",
         fit=fit,
         unit=steps.unit,
         dimension=steps.dimension,

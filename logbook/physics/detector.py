@@ -151,3 +151,18 @@ def level_from_output(fit: DetectorFit, output: float, u_output: float | None = 
     u_line = 0.0 if exact else math.sqrt(max(variance, 0.0))
     u_read = None if u_output is None else abs(u_output / fit.slope)
     return Reading(level, u_line, fit.scatter / abs(fit.slope), u_read)
+
+
+def line_parts(fit: DetectorFit, output: float) -> tuple[float, float]:
+    """The doubt (dB) of a level read through a line, taken apart: of the line's height, and of its slope with sign.
+
+    At the output where the slope's error does nothing, v0 = r u_intercept slope^2/u_slope, both are independent: u of
+    the height is u_intercept sqrt(1 - r^2), and the slope adds (v0 - v) u_slope/slope^2. Two readings through one line
+    share the error of either, so that levels far apart differ by what the slope is wrong.
+    Source: JCGM 100:2008 5.2.2, H.3.5; the orthogonal form of the fit in `fit_detector`.
+    """
+    if not fit.u_slope > 0.0:
+        return fit.u_intercept_db, 0.0
+    middle = fit.correlation * fit.u_intercept_db * fit.slope**2 / fit.u_slope
+    height = fit.u_intercept_db * math.sqrt(max(1.0 - fit.correlation**2, 0.0))
+    return height, (middle - output) * fit.u_slope / fit.slope**2

@@ -9,7 +9,6 @@ from logbook.pieces import Box, Branch, Cards, Diagram, Picture, Tree, Written
 from logbook.terminal.lines import clean, line_text, padded, width_of, wrapped
 from logbook.terminal.tables import table_lines
 
-
 # Columns that a card's words should have beside its title and figure.
 _LEAST_ROOM = 20
 

@@ -25,7 +25,9 @@ class Steps:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Calibration:
-    """A detector's line as of `since`, by the staircase at `written` (entry and line); levels in dBm, output in V or divisions.
+    """A detector's line as of `since`, by the staircase at `written` (entry and line).
+
+    Levels are in dBm, outputs in V or divisions.
 
     `drive` is the accuracy of the source that stepped it, common to all that is read through it. `lowest` and
     `highest` are the levels between which it was stepped, `window_dbm` those between which the line was fitted.

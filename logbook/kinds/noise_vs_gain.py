@@ -9,7 +9,7 @@ import numpy as np
 
 from logbook.fields import Field, choice, many, quantity, text
 from logbook.kind import Kind, Outcome, Session
-from logbook.kinds._measured import Setting, derived, measured, not_on_a_plan, setting_of
+from logbook.kinds._measured import Setting, derived, measured, not_on_a_plan, overdue_note, setting_of
 from logbook.kinds.reading import AVERAGING
 from logbook.model import Block, Result, Source, Values
 from logbook.physics.noise_split import (
@@ -22,6 +22,7 @@ from logbook.physics.noise_split import (
     told_apart,
 )
 from logbook.problems import did_you_mean
+from logbook.quantity_display import show_value
 from logbook.showing.noise_vs_gain import Split, show_noise_vs_gain
 from logbook.stage_fields import LEVEL
 
@@ -85,9 +86,33 @@ def _one(values: Values, session: Session) -> Split | None:
     own = [_fresh_u(each) for each in readings]
     u = np.array([nan if each is None else each for each in own])
     split = split_noise(settings, noise, None if np.isnan(u).any() else u)
-    apart = told_apart(split, 2.0)
-    results = _results(split, readings, values, setting) if apart else _not_known(split, readings, values, setting)
+    why = _why_not(split, readings, settings)
+    apart = not why
+    results = _results(split, readings, values, setting) if apart else _not_known(why, readings, values, setting)
     return Split(tuple(map(float, settings)), tuple(readings), split, apart, values.get("control", ""), results)
+
+
+def _why_not(split: NoiseSplit, readings: list[Result], settings: np.ndarray) -> str:
+    """Why the readings cannot be split; nothing when they can."""
+    bound = next((setting for setting, reading in zip(settings, readings, strict=True) if reading.bound), None)
+    if bound is not None:
+        return f"at {show_value(float(bound), 'dB')} the bench's own noise hides that of the unit"
+    if told_apart(split, 2.0):
+        return ""
+    if isnan(split.u_ahead_w) or isnan(split.u_after_w):
+        return "two readings without stated doubt tell nothing of the doubt of the split"
+    return "the readings do not tell the two apart"
+
+
+def _notes(readings: list[Result], setting: Setting) -> tuple[str, ...]:
+    """What is to be said of the readings, and of doubt that only some of them state."""
+    notes = [note for each in readings for note in each.notes if note not in overdue_note(setting)]
+    stated = sum(_fresh_u(each) is not None for each in readings)
+    if 0 < stated < len(readings):
+        notes.append(
+            "only some of the readings state their doubt, so all count alike and their scatter is taken for it"
+        )
+    return tuple(dict.fromkeys(notes))
 
 
 def _sound(values: Values, setting: Setting, session: Session) -> bool:
@@ -146,16 +171,19 @@ def _results(split: NoiseSplit, readings: list[Result], values: Values, setting:
     common, place, at = _common(readings), values.place("noise"), readings[0].at_hz
     u_ahead, u_after = part_uncertainties_db(split)
     level, u_equal = equal_setting(split)
+    notes = _notes(readings, setting)
     found = []
     for quantity_, value, u in (
         ("noise_ahead", noise_ahead_dbm(split), u_ahead),
         ("noise_after", noise_after_dbm(split), u_after),
     ):
         parts = {**common, _own(values, quantity_): u}
-        found.append(derived(quantity_, value, "dBm", parts, setting, place, at_hz=at))
+        found.append(derived(quantity_, value, "dBm", parts, setting, place, at_hz=at, notes=notes))
     parts = {_own(values, "equal_setting"): u_equal}
-    found.append(derived("equal_setting", level, "dB", parts, setting, place, at_hz=at))
-    # What was read is already in the noise bandwidth of its rbw.
+    found.append(derived("equal_setting", level, "dB", parts, setting, place, at_hz=at, notes=notes))
+    if readings[0].conditions.averaging is None:
+        return tuple(found)
+    # What was read is a power average already.
     return tuple(replace(each, conditions=replace(each.conditions, averaging="power")) for each in found)
 
 
@@ -164,10 +192,7 @@ def _own(values: Values, what: str) -> Source:
     return Source("fresh", f"{place.file}:{place.line}", what, "least squares")
 
 
-def _not_known(split: NoiseSplit, readings: list[Result], values: Values, setting: Setting) -> tuple[Result, ...]:
-    words = "the readings do not tell the two apart"
-    if isnan(split.u_ahead_w) or isnan(split.u_after_w):
-        words = "two readings without stated doubt tell nothing of the doubt of the split"
+def _not_known(words: str, readings: list[Result], values: Values, setting: Setting) -> tuple[Result, ...]:
     found = []
     for quantity_, unit in (("noise_ahead", "dBm"), ("noise_after", "dBm"), ("equal_setting", "dB")):
         place, at = values.place("noise"), readings[0].at_hz

@@ -78,7 +78,8 @@ def _parts(shown: Shown, known: KnownQuantity | None, bench: Bench | None) -> di
     side = known.side
     if side in ("shown", "gain"):
         _take(parts, bench.accuracy)
-    if side in ("gain", "drive"):
+    if side in ("gain", "drive") or (known.name == "output_level" and shown.conditions.drive_dbm is not None):
+        # An output level stands for its drive: an error of the source moves it as an error of the reading does.
         _take(parts, bench.drive_accuracy)
     if side in ("shown", "gain", "relative") and bench.linearity_u:
         parts[Source("fresh", shown.where, shown.quantity, "linearity")] = bench.linearity_u
@@ -120,7 +121,7 @@ def _free_of_bench(
     elif shown.conditions.averaging == "log":
         corrected = carrier_from_log_average(state.value, floor)
     else:
-        return _unaveraged(state, excess)
+        return _unaveraged(state, excess, shown.conditions.averaging)
     # The correction steepens the scale: an error of the reading moves the corrected value by more than itself.
     steeper = float(corrected.per_reading)
     parts = {source: part * (steeper if source.what != "loss" else 1) for source, part in state.parts.items()}
@@ -128,10 +129,11 @@ def _free_of_bench(
     return replace(_add(state, label, float(corrected.value_dbm) - state.value), parts=parts)
 
 
-def _unaveraged(state: EqualTerms, excess: float) -> EqualTerms:
+def _unaveraged(state: EqualTerms, excess: float, averaging: str | None) -> EqualTerms:
     if excess >= 20:
         return state
-    note = f"only {excess:.1f} dB above the bench's own noise and its averaging is not stated: not corrected"
+    why = "its averaging is not stated" if averaging is None else f"no law is known for its {averaging} average"
+    note = f"only {excess:.1f} dB above the bench's own noise and {why}: not corrected"
     return replace(state, notes=(*state.notes, note))
 
 

@@ -9,8 +9,8 @@ from logbook.quantities import known_quantity
 from logbook.quantity_display import show_frequency, show_value
 
 # Quantities that depend on the level at the input: a drive that differs by more than this is another condition (dB).
-_DRIVEN = frozenset({"output_level", "harmonic", "spur_level", "oip3", "oip2"})
-_DRIVE_DIFFERS_DB = 0.5
+# A level follows its drive, a product twice or three times; an intercept hardly minds, well below compression.
+_DRIVEN = {"output_level": 0.1, "harmonic": 0.1, "spur_level": 0.1, "oip3": 0.5, "oip2": 0.5}
 
 
 def why_not_comparable(before: Result, after: Result) -> str:
@@ -21,7 +21,7 @@ def why_not_comparable(before: Result, after: Result) -> str:
     if known is not None and known.noise:
         return _noise(before, after)
     if known is not None and known.name in _DRIVEN:
-        return _drive(before, after)
+        return _drive(before, after, _DRIVEN[known.name])
     return ""
 
 
@@ -77,9 +77,9 @@ def _hz(value: float | None) -> str:
     return "not stated" if value is None else show_frequency(value)
 
 
-def _drive(before: Result, after: Result) -> str:
+def _drive(before: Result, after: Result, bearable_db: float) -> str:
     old, new = before.conditions.drive_dbm, after.conditions.drive_dbm
-    if old is None or new is None or abs(old - new) <= _DRIVE_DIFFERS_DB:
+    if old is None or new is None or abs(old - new) <= bearable_db:
         return ""
     return (
         f"{before.revision} was driven with {show_value(old, 'dBm')} and {after.revision} with "

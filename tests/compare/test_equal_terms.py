@@ -233,3 +233,33 @@ def test_another_drive_is_another_condition_for_what_depends_on_the_level() -> N
     found = delta(two("10 dBm; drive: -10 dBm", "12 dBm; drive: -8 dBm", "output_level"), "rx/output_level", "B")
     assert found.verdict == "not comparable"
     assert "-10.00 dBm" in found.why
+
+
+def test_small_differences_of_the_drive_count_where_the_level_follows_it() -> None:
+    level = delta(two("10 dBm; drive: -10 dBm", "10.3 dBm; drive: -9.7 dBm", "output_level"), "rx/output_level", "B")
+    assert level.verdict == "not comparable"
+    point = delta(two("20 dBm; drive: -10 dBm", "21 dBm; drive: -9.7 dBm", "oip3"), "rx/oip3", "B")
+    assert point.verdict == "better"
+
+
+@pytest.mark.parametrize(("averaging", "words"), [("", "not stated"), ("averaging: voltage", "voltage average")])
+def test_carrier_near_the_floor_whose_average_follows_no_known_law(averaging: str, words: str) -> None:
+    found = one("output_level: -100 dBm", f"rbw: 10 kHz\n{averaging}", FLOOR)
+    assert found.value == pytest.approx(-100)
+    assert any(words in note for note in found.notes)
+    assert one("output_level: -80 dBm", f"rbw: 10 kHz\n{averaging}", FLOOR).notes == ()
+
+
+def test_output_level_stands_for_its_drive_with_the_doubt_of_its_source() -> None:
+    driven = block("bench", "bench: shack\nreads: {accuracy: ± 0.6 dB}\ndrives: {accuracy: ± 0.8 dB}")
+    found = [
+        next(
+            r
+            for r in book_of(
+                entry("01-01", CHAIN, driven, reading("output_level: -10 dBm", more), revision="A")
+            ).results
+            if r.basis == "measured"
+        )
+        for more in ("bench: shack\ndrive: -30 dBm", "bench: shack")
+    ]
+    assert [r.u for r in found] == pytest.approx([math.sqrt(1.0 / 3), math.sqrt(0.36 / 3)])

@@ -137,7 +137,7 @@ def test_words_stand_out_from_their_ground_in_both_schemes(in_scheme: Visitor) -
 
 
 WORDS = ("better", "worse", "same", "changed", "not comparable", "new", "gone", "meets", "misses", "undecided")
-WORDS += ("agrees", "disagrees")
+WORDS += ("agrees", "disagrees", "possible", "struck out")
 
 LOOK = """words => words.map(word => {
   const made = document.createElement('span');

@@ -11,11 +11,11 @@ from logbook.kind import Kind, Outcome, Session
 from logbook.kinds._measured import Setting, derived, fresh, not_on_a_plan, setting_of
 from logbook.model import Block, Result, Source, Values
 from logbook.physics.constants import T0
-from logbook.physics.propagation import propagate
+from logbook.physics.propagation import curved, propagate
 from logbook.physics.y_factor import noise_figure, without_second_stage
 from logbook.problems import did_you_mean
 from logbook.quantity import Quantity, level_dbm
-from logbook.showing.y_factor import YFactorShown, show_y_factor
+from logbook.showing.y_factor import SOURCES, YFactorShown, show_y_factor
 from logbook.stage_fields import LEVEL
 
 # Hot and cold may be levels, powers, or a dial in dB; only their ratio counts.
@@ -108,12 +108,13 @@ def _one(values: Values, setting: Setting, session: Session) -> YFactorShown | N
         "nf",
         value,
         "dB",
-        {_source(name, values, setting): part for name, part in parts.items()},
+        {_source(name, values): part for name, part in parts.items()},
         setting,
         values.place("enr"),
         at_hz=None if at is None else at.value,
         name=values.get("name", values.get("stage", "")),
         words=words,
+        notes=() if words else _notes(given, inputs, value),
     )
     budget = tuple((name, *inputs[name], part) for name, part in sorted(parts.items(), key=lambda p: -abs(p[1])))
     return YFactorShown(result, plain, given.y(plain), given.total(plain), values.get("stage", ""), budget)
@@ -127,6 +128,15 @@ def _why_not(given: _Given, plain: Mapping[str, float]) -> str:
     if isnan(given.first(plain)):
         return "the second stage alone makes more noise than was measured: its noise figure or the gain is wrong"
     return ""
+
+
+def _notes(given: _Given, inputs: Mapping[str, tuple[float, float | None]], nf_db: float) -> tuple[str, ...]:
+    """A word on a figure that nothing can have, and on doubt that the figure does not follow in a straight line."""
+    notes = ["a noise figure below 0 dB, which nothing has: the ENR or a reading is off"] if nf_db < 0 else []
+    wide = [SOURCES[name] for name in curved(given.first, inputs)]
+    if wide:
+        notes.append(f"its doubt is only rough, because that of the {' and of the '.join(wide)} is wide")
+    return tuple(notes)
 
 
 def _inputs(values: Values, setting: Setting, session: Session) -> dict[str, tuple[float, float | None]] | None:
@@ -168,12 +178,13 @@ def _stage_known(values: Values, setting: Setting, session: Session) -> bool:
     return False
 
 
-def _source(name: str, values: Values, setting: Setting) -> Source:
+def _source(name: str, values: Values) -> Source:
     """The noise source's ENR is one error in all that was measured with it; the rest is fresh."""
     if name != "enr":
         return fresh(values.start, "nf", name)
-    since = setting.bench.since if setting.bench is not None else ""
-    return Source("bench", values.get("bench", ""), values.get("noise_source", "noise source"), "enr", since)
+    # With another ENR it is another source, or the same one calibrated again: either way another error.
+    source = f"{values.get('noise_source', 'noise source')} ({values['enr'].written})"
+    return Source("bench", values.get("bench", ""), source, "ENR")
 
 
 KIND = Kind(

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Callable, Mapping
+from math import isnan
 from typing import TypeVar
 
 S = TypeVar("S")
@@ -18,16 +18,19 @@ def propagate(
     """Value of a function of the inputs {source: (value, standard uncertainty)}, and its parts c_i u_i by source.
 
     Any units; an uncertainty of None adds nothing. c_i u_i is half of f(x_i + u_i) - f(x_i - u_i), so it is exact for
-    what is linear or quadratic. nan parts where the function is nan on either side.
+    what is linear or quadratic. Where the function is nan on one side, twice the other side's step stands for both; a
+    nan part where it is nan on both, or at the values themselves.
     Source: JCGM 100:2008 5.1.2, 5.1.3 note 2.
     """
     values = {source: value for source, (value, _) in inputs.items()}
+    here = float(function(values))
     parts = {}
     for source, (value, u) in inputs.items():
         if u:
-            above, below = (function({**values, source: value + sign * u}) for sign in (+1.0, -1.0))
-            parts[source] = float(above - below) / 2.0
-    return float(function(values)), {source: part for source, part in parts.items() if part != 0.0}
+            above, below = (float(function({**values, source: value + sign * u})) for sign in (+1.0, -1.0))
+            above, below = (2 * here - below if isnan(above) else above), (2 * here - above if isnan(below) else below)
+            parts[source] = (above - below) / 2.0
+    return here, {source: part for source, part in parts.items() if part != 0.0}
 
 
 def curved(
@@ -42,6 +45,6 @@ def curved(
     for source, (value, u) in inputs.items():
         if u:
             above, below = (function({**values, source: value + sign * u}) for sign in (+1.0, -1.0))
-            if math.isnan(above) or math.isnan(below) or abs(above + below - 2 * here) > _CURVED * abs(above - below):
+            if isnan(above) or isnan(below) or abs(above + below - 2 * here) > _CURVED * abs(above - below):
                 found.append(source)
     return tuple(found)

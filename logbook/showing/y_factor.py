@@ -27,13 +27,13 @@ class YFactorShown:
     budget: tuple[tuple[str, float, float | None, float], ...]
 
 
-_WORDS = {
+SOURCES = {
     "enr": "ENR of the noise source",
     "hot": "hot reading",
     "cold": "cold reading",
-    "y": "Y",
+    "y": "Y factor",
     "cold_temperature": "temperature of the cold source",
-    "linearity": "the instrument's linearity between hot and cold",
+    "linearity": "instrument's linearity between hot and cold",
     "second_nf": "noise figure of the second stage",
     "second_gain": "gain ahead of the second stage",
 }
@@ -65,10 +65,10 @@ def _one(shown: YFactorShown) -> list[Piece]:
     if "second_nf" in given:
         behind, gain = show_value(given["second_nf"], "dB"), show_value(given["second_gain"], "dB")
         line += f" with the second stage, and {show_value(result.value, 'dB')} without it ({behind} behind {gain})"
-    pieces: list[Piece] = [Text(line + ".")]
+    pieces: list[Piece] = [Text(line + "."), *(Note(f"{note}.", "caution") for note in result.notes)]
     if shown.budget:
         pieces.append(Folded("Where the doubt of the noise figure comes from", (_budget(shown),)))
-    if shown.stage:
+    if shown.stage and result.value >= 0:
         pieces += _for_the_chain(shown)
     return pieces
 
@@ -79,7 +79,7 @@ def _budget(shown: YFactorShown) -> Table:
         unit = "K" if name == "cold_temperature" else "dB"
         stated = "" if u is None else show_value(u, unit)
         per = "" if not u else f"{part / u:+.3g} dB/{unit}"
-        rows.append((_WORDS[name], show_value(value, unit), stated, per, show_value(abs(part), "dB")))
+        rows.append((SOURCES[name], show_value(value, unit), stated, per, show_value(abs(part), "dB")))
     head = ("source", "value", "standard uncertainty", "sensitivity", "part of the doubt")
     return Table(head, tuple(rows), "", frozenset({1, 2, 3, 4}))
 

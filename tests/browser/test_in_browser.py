@@ -173,6 +173,7 @@ def test_every_figure_says_what_it_shows_and_has_its_numbers_as_a_table(desk: Vi
     seen = 0
     for path in desk.paths:
         page = desk.open(path)
+        page.evaluate("document.querySelectorAll('details').forEach(each => each.open = true)")
         for figure in page.locator(".lb-picture").all():
             seen += 1
             drawing = figure.get_by_role("img")
@@ -183,11 +184,19 @@ def test_every_figure_says_what_it_shows_and_has_its_numbers_as_a_table(desk: Vi
             assert title, path
             assert len(words) > 15, path
             assert figure.locator("details tbody tr").count() > 0, (path, title)
-            figure.locator("summary").click()
             assert figure.locator("tbody tr").first.is_visible()
         for figure in page.locator(".lb-diagram").all():
             assert figure.locator("ol > li .lb-name").count() > 0, path
     assert seen > 20
+
+
+def test_what_is_folded_opens_with_the_keyboard(desk: Visitor) -> None:
+    page = desk.open("history.html")
+    table = page.locator(".lb-picture tbody tr").first
+    assert not table.is_visible()
+    page.locator(".lb-picture summary").first.focus()
+    page.keyboard.press("Enter")
+    assert table.is_visible()
 
 
 def test_words_in_drawings_can_be_read_on_a_phone(phone: Visitor) -> None:

@@ -67,6 +67,7 @@ _ROWS: tuple[tuple[str, str, Better, float, Side, bool], ...] = (
     ("if_rejection", "ratio", "higher", 0.5, "relative", False),
     ("spur_level", "level", "lower", 0.5, "shown", False),
     ("harmonic", "relative", "lower", 0.5, "relative", False),
+    ("spurious", "relative", "lower", 0.5, "relative", False),
     ("phase_noise", "relative_density", "lower", 0.5, "relative", False),
     ("output_level", "level", "neither", 0.2, "shown", False),
     ("insertion_loss", "ratio", "lower", 0.1, "relative", False),

@@ -16,6 +16,7 @@ from logbook.model import MEASURED, Block, Result, Values
 from logbook.physics.uncertainty import linear_sum
 from logbook.problems import Place, did_you_mean
 from logbook.quantity import Quantity
+from logbook.quantity_display import show_value
 from logbook.rules import Rule, read_rule, shipped_rules
 from logbook.showing.emission import show_emission
 from logbook.stage_fields import LEVEL
@@ -94,18 +95,21 @@ def _one(values: Values, session: Session) -> Emission | None:
     carrier = measured("output_level", values["carrier"], setting, values.place("carrier"), at)
     if carrier is None:
         return None
-    lines = [_line(each, carrier, setting) for each in _once(values["lines"], session)]
+    lines = [_line(each, carrier, setting) for each in _once(values["lines"], at, session)]
     sound = tuple(line for line in lines if line is not None)
     judged = tuple(each for rule in rules for each in _judged(rule, carrier, sound, setting))
     results = (carrier, *(line.relative for line in sound), *(j.margin for j in judged if j.margin is not None))
     return Emission(carrier, sound, tuple(rules), judged, results)
 
 
-def _once(lines: Iterable[Values], session: Session) -> list[Values]:
+def _once(lines: Iterable[Values], carrier_hz: float, session: Session) -> list[Values]:
     found: dict[float, Values] = {}
     for each in lines:
         at = each["at"]
-        if at.value in found:
+        if at.value == carrier_hz:
+            message = f"A line stands at {at.written}, where the carrier is."
+            session.fault(each.place("at"), "duplicate-line", message, "The lines are what stands beside the carrier.")
+        elif at.value in found:
             message = f"Two lines stand at {at.written}."
             session.fault(each.place("at"), "duplicate-line", message, "Give repeated readings as a list in one line.")
         else:
@@ -129,6 +133,8 @@ def _line(values: Values, carrier: Result, setting: Setting) -> LineLevel | None
         return None
     parts = linear_sum([(1.0, absolute.parts), (-1.0, carrier.parts)])
     ratio = absolute.value - carrier.value
+    if not _borne(ratio, carrier, setting, place):
+        return None
     relative = derived(name, ratio, "dBc", parts, setting, place, at_hz=at, better="lower", notes=absolute.notes)
     relative = replace(relative, basis=MEASURED, bound=absolute.bound)
     return LineLevel(at, absolute.value, absolute.parts, relative)
@@ -141,11 +147,12 @@ def _name(line_hz: float, carrier_hz: float) -> str:
 
 
 def _borne(relative_db: float, carrier: Result, setting: Setting, place: Place) -> bool:
-    """A line above its carrier is a slip of the sign."""
+    """A line that is no lower than its carrier is a slip of the sign, or the carrier was read behind other loss."""
     if relative_db < 0:
         return True
-    message = f"A line {relative_db:+g} dBc stands above its carrier."
-    setting.session.fault(place, "sign", message, "A line below the carrier is a negative number of dBc.")
+    message = f"A line at {show_value(relative_db, 'dBc')} stands no lower than its carrier."
+    hint = "A line below the carrier is a negative number of dBc; carrier and lines are read behind the same path."
+    setting.session.fault(place, "sign", message, hint)
     return False
 
 
@@ -163,9 +170,8 @@ def _judged(rule: Rule, carrier: Result, lines: Iterable[LineLevel], setting: Se
             continue
         parts = linear_sum([(slope, carrier.parts), (-1.0, line.parts)])
         place = setting.values.place("rule")
-        margin = derived(
-            "margin", allowed - line.level_dbm, "dB", parts, setting, place, at_hz=line.at_hz, name=rule.name
-        )
+        name = f"{setting.values.get('name', '')} {rule.name}".strip()
+        margin = derived("margin", allowed - line.level_dbm, "dB", parts, setting, place, at_hz=line.at_hz, name=name)
         found.append(Judged(rule, line, "", allowed, replace(margin, bound="lower" if line.relative.bound else "")))
     return found
 
@@ -181,8 +187,11 @@ def _allowed(rule: Rule, carrier_dbm: float) -> tuple[float, float]:
 def _rules(values: Values, session: Session) -> list[Rule]:
     """The rules named: one that comes with the logbook, or a file of the logbook's own."""
     found = []
-    for named in values.get("rule", ()):
-        place = values.place("rule")
+    for number, named in enumerate(values.get("rule", ())):
+        place = values.place("rule", number)
+        if named in values["rule"][:number]:
+            session.fault(place, "duplicate-rule", f"The rule '{named}' is named twice.")
+            continue
         if named.endswith((".yml", ".yaml")):
             data = session.read_file(named, place)
             path = session.file_path(named)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from functools import cache
 from importlib.resources import files
-from math import nan
+from math import isnan, nan
 from typing import Any
 
 from logbook.fields import Asked, Field, many, mapping, pair, quantity, read_mapping, text
@@ -55,7 +55,7 @@ class Limit:
 
     def holds(self, carrier_dbm: float) -> bool:
         """Whether the limit is the one for a carrier of this power."""
-        if self.up_to_dbm != self.up_to_dbm:
+        if isnan(self.up_to_dbm):
             return True
         return carrier_dbm < self.up_to_dbm if self.open_end else carrier_dbm <= self.up_to_dbm
 
@@ -94,7 +94,9 @@ class Rule:
 
     def allowed_dbm(self, carrier_dbm: float) -> float:
         """The level that a line may have beside a carrier of this power, dBm; nan when no limit holds."""
-        limit = next((each for each in self.limits if each.holds(carrier_dbm)), None)
+        holding = [each for each in self.limits if each.holds(carrier_dbm)]
+        # Of several the one for the lowest power, in whatever order they are written; without a power it is the last.
+        limit = min(holding, key=lambda each: (isnan(each.up_to_dbm), each.up_to_dbm), default=None)
         if limit is None:
             return nan
         return allowed_level(
@@ -106,7 +108,7 @@ def read_rule(content: str, file: str, problems: Problems) -> Rule | None:
     """A rule from the text of its file; None with located faults."""
     node = read_yaml(content.replace("\r\n", "\n"), file, 1, 0, problems, "rule")
     values = read_mapping(node, FIELDS, Asked("a rule", problems))
-    if values is None:
+    if values is None or not _sound(values, problems):
         return None
     carrier, lines = values["carrier"], values.get("lines")
     return Rule(
@@ -122,6 +124,26 @@ def read_rule(content: str, file: str, problems: Problems) -> Rule | None:
         left_out=tuple(values.get("left_out", ())),
         note=values.get("note", ""),
     )
+
+
+_LIMITING = ("below_carrier", "below_carrier_log_power", "at_most")
+
+
+def _sound(values: Values, problems: Problems) -> bool:
+    """Whether its ranges run upwards, and each of its limits limits something."""
+    before = len(problems)
+    for key in ("carrier", "lines"):
+        if key in values and not values[key][0].value < values[key][1].value:
+            low, high = (each.written for each in values[key])
+            problems.add(values.place(key), "pair", f"The range runs from {low} to {high}; the lower comes first.")
+    for each in values["limits"]:
+        if not any(key in each for key in _LIMITING):
+            message = "This limit limits nothing."
+            problems.add(each.start, "limit", message, f"It needs one of {', '.join(_LIMITING)} at least.")
+        if "up_to" in each and "below" in each:
+            message = "A limit holds for carriers either 'up_to' a power or 'below' it."
+            problems.add(each.place("below"), "limit", message)
+    return len(problems) == before
 
 
 def _limit(values: Values) -> Limit:

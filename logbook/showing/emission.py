@@ -87,7 +87,7 @@ def _bandwidths(emission: Emission) -> list[Piece]:
 
 
 def _rule(rule: Rule, judged: list[Judged]) -> list[Piece]:
-    pieces: list[Piece] = [Text((Strong(f"{rule.regulation}{rule.paragraph}: "), f"{rule.title}."))]
+    pieces: list[Piece] = [Text((Strong(f"{_cited(rule)}: "), f"{rule.title}."))]
     silent = next((each.silent for each in judged if each.line is None), "")
     if silent:
         pieces.append(Note(f"This rule says nothing here: {silent}.", "caution"))
@@ -95,6 +95,11 @@ def _rule(rule: Rule, judged: list[Judged]) -> list[Piece]:
         pieces.append(_margins(rule, judged))
     pieces.append(Folded(f"What stands behind {rule.name}", _behind(rule)))
     return pieces
+
+
+def _cited(rule: Rule) -> str:
+    """`47 CFR 97.307(e)`, `Licence conditions 4.2`."""
+    return rule.regulation + ("" if rule.paragraph.startswith("(") else " ") + rule.paragraph
 
 
 def _margins(rule: Rule, judged: list[Judged]) -> Table:
@@ -125,7 +130,7 @@ def _margins(rule: Rule, judged: list[Judged]) -> Table:
 
 
 def _behind(rule: Rule) -> tuple[Piece, ...]:
-    lines: list[Line] = [f"Text: {rule.regulation}{rule.paragraph}, {rule.edition}."]
+    lines: list[Line] = [f"Text: {_cited(rule)}, {rule.edition}."]
     lines += [f"Left out: {each}." for each in rule.left_out]
     lines += [rule.note] if rule.note else []
     lines.append("The path's loss is taken as the same for all lines; see that pads and taps keep it at the harmonics.")

@@ -10,6 +10,7 @@ from hypothesis import strategies as st
 
 from logbook.book import Book, SourceFile, make_book
 from logbook.html import render
+from logbook.kinds import registry
 from logbook.model import Result
 from logbook.pages import block_pieces, generated_pages, home_pieces
 from logbook.results import results_json
@@ -177,7 +178,7 @@ def assert_shown(book: Book) -> None:
 
 
 FUZZ = settings(
-    max_examples=200, derandomize=True, deadline=None, database=None, suppress_health_check=list(HealthCheck)
+    max_examples=130, derandomize=True, deadline=None, database=None, suppress_health_check=list(HealthCheck)
 )
 
 GOOD = book_of(entry(BLOCKS))
@@ -231,3 +232,16 @@ def test_bytes_of_any_sort_raise_nothing(noise: bytes, here: int) -> None:
     book = make_book([SourceFile("ground.md", GROUND.encode()), SourceFile("changed.md", data)], Path("."))
     assert_in_place(book, {"ground.md": GROUND, "changed.md": data.decode("utf-8", "replace")})
     assert results_json(book)
+
+
+@FUZZ
+@given(st.data(), st.sampled_from(sorted(registry())))
+def test_a_mishap_in_the_example_of_any_kind(data: st.DataObject, word: str) -> None:
+    kind = registry()[word]
+    text = data.draw(mutated(kind.example)).rstrip("\n") + "\n"
+    whole = f"---\ntitle: Changed\ndate: 2026-02-01\nrevision: B\nfrom: A\n---\n\n```yaml {word}\n{text}```\n"
+    book = book_of(whole)
+    assert_in_place(book, {"ground.md": GROUND, "changed.md": whole})
+    ground = [r for r in book.results if r.entry == "ground.md"]
+    assert said(tuple(ground)) == said(tuple(r for r in GOOD.results if r.entry == "ground.md"))
+    assert_shown(book)

@@ -133,6 +133,11 @@ def calculate(block: Block, session: Session) -> Outcome:
     return Outcome(tuple(results), tuple(shown))
 
 
+# Ways to say how much power turns to heat; what one of them needs means nothing in the others.
+_REGULATOR = ("output_voltage", "own_current")
+_AMPLIFIER = ("rf_output", "rf_input")
+_BY_SUPPLY = ("input_voltage", "current", *_REGULATOR, *_AMPLIFIER)
+
 _WAYS = "Give 'power:', or 'input_voltage:' with 'current:' and, for a regulator, 'output_voltage:'."
 
 
@@ -149,12 +154,29 @@ def _case(values: Values, session: Session) -> _Case | None:
         message = f"Neither a case nor an ambient temperature is given for '{values['name']}'."
         session.fault(values.start, "missing-key", message, "Give 'case:' as measured, or 'ambient:'.")
         return None
+    if not _one_way(values, session):
+        return None
     given = {name: value for name, (value, _) in inputs.items()}
     if case.power(given) < 0:
         message = f"'{values['name']}' would give out more power than it takes in."
         session.fault(values.start, "power", message, "Look at the voltages, the current and the RF output again.")
         return None
     return case
+
+
+def _one_way(values: Values, session: Session) -> bool:
+    """Whether the power is given in one way; a fault at the first key that belongs to another."""
+    also, why = "", ""
+    if "power" in values:
+        also, why = next((key for key in _BY_SUPPLY if key in values), ""), "'power' says already how much it is"
+    elif "output_voltage" in values:
+        also, why = next((key for key in _AMPLIFIER if key in values), ""), "'output_voltage' makes it a regulator"
+    elif "own_current" in values:
+        also, why = "own_current", "it belongs to a regulator, and no 'output_voltage' is given"
+    if also:
+        message = f"'{also}' has no part in the power of '{values['name']}': {why}."
+        session.fault(values.place(also), "given-twice", message, "Take one of them out.")
+    return not also
 
 
 # What is read afresh at every reading; the rest belongs to the part and is the same error whenever it is used.
@@ -180,6 +202,9 @@ def _results(case: _Case, setting: Setting) -> list[Result]:
         if "maximum" in case:
             margin = junction_margin(junction, case.inputs["maximum"][0])
             less = {name: -part for name, part in parts.items()}
+            most_u = case.inputs["maximum"][1]
+            if most_u is not None:
+                less["maximum"] = most_u
             found.append(derived("junction_margin", margin, "K", _parts(less, case, setting), setting, place))
     sink, parts = propagate(case.sink, case.inputs)
     if isfinite(sink) and not isinf(sink) and "sink_ambient" not in case:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from functools import partial
-from math import isfinite, nan
+from math import hypot, isfinite, nan
 
 from logbook.fields import Field, many, mapping, pair, quantity, text
 from logbook.hardware import Chain
@@ -100,7 +100,20 @@ def _one(values: Values, setting: Setting, session: Session) -> Supply | None:
     arrival = _arrival(values, sound, chain, setting, session) if len(session.problems) == before else None
     if arrival is not None:
         results += arrival.results
-    return Supply(values.get("name", ""), tuple(sound), arrival, tuple(results))
+    silent = _silent(values, sound, chain) if arrival is None else ""
+    return Supply(values.get("name", ""), tuple(sound), arrival, tuple(results), silent)
+
+
+def _silent(values: Values, lines: list[LineNoise], chain: Chain | None) -> str:
+    """Why nothing is said of what arrives at the stage that is named."""
+    stage = values.get("stage")
+    if stage is None:
+        return ""
+    if chain is None:
+        return f"what arrives at {stage} is not known: no chain is described"
+    if not any(line.psrr is not None for line in lines):
+        return f"what arrives at {stage} is not known: no line gives the load's 'psrr'"
+    return f"what arrives at {stage} is not known: the chain gives no 'bandwidth'" if chain.bandwidth_hz is None else ""
 
 
 def _names(values: Values, session: Session) -> None:
@@ -133,6 +146,11 @@ def _line(values: Values, setting: Setting, session: Session) -> LineNoise | Non
         message = "Phase noise by pushing depends on the offset from the carrier, and none is given."
         session.fault(values.place("pushing"), "missing-key", message, "Add 'offset: 1 kHz'.")
         return None
+    for key in ("output", "control", "pushing"):
+        if key in values and values[key].value == 0:
+            message = f"'{values[key].written}' at '{key}': nothing comes of a zero."
+            session.fault(values.place(key), "sign", message, "Take it out, or give what it is.")
+            return None
     output = values["output"].value if "output" in values else 1.0
 
     def density(given: float) -> float:
@@ -142,10 +160,16 @@ def _line(values: Values, setting: Setting, session: Session) -> LineNoise | Non
         return float(density_from_rms(volts, low, high))
 
     value = density(noise.value)
-    relative = None if noise.u is None else noise.u / noise.value
+    relative = _relative_u(noise, values["output"] if noise.dimension == "voltage_ratio" else None)
     rms = float(rms_from_density(value, low, high)) if band is not None else nan
     line = LineNoise(values["name"], noise.written, value, rms, (low, high), relative, _psrr(values), values, ())
     return line.with_results(_line_results(line, values, setting))
+
+
+def _relative_u(*factors: Quantity | None) -> float | None:
+    """Relative u of a product; None where no factor states one."""
+    stated = [each.u / each.value for each in factors if each is not None and each.u is not None]
+    return hypot(*stated) if stated else None
 
 
 def _psrr(values: Values) -> tuple[float, float | None] | None:
@@ -159,13 +183,18 @@ def _line_results(line: LineNoise, values: Values, setting: Setting) -> tuple[Re
     if isfinite(line.rms_v):
         parts = None if line.relative_u is None else {own: line.rms_v * line.relative_u}
         results.append(derived("supply_noise", line.rms_v, "V", parts, setting, place, name=line.name))
-    ways: tuple[tuple[str, str, Callable[[float], float]], ...] = (
-        ("control", "amplitude_noise", lambda density: amplitude_noise(density, values["control"].value)),
-        ("pushing", "phase_noise", lambda density: _phase_noise(density, values)),
+    ways: tuple[tuple[str, str, Callable[[float, float], float]], ...] = (
+        ("control", "amplitude_noise", amplitude_noise),
+        ("pushing", "phase_noise", lambda density, slope: _phase_noise(density, slope, values)),
     )
     for key, quantity_, value in ways:
         if key in values:
-            level, parts = propagate(partial(_of_density, value, own), {own: (line.density, line.u_density)})
+            slope = values[key]
+            given = {
+                own: (line.density, line.u_density),
+                _belongs(line.name, key, slope, setting): (slope.value, slope.u),
+            }
+            level, parts = propagate(partial(_modulated, value), given)
             at = values["offset"].value if key == "pushing" else None
             results.append(
                 derived(quantity_, level, "dBc/Hz", parts, setting, place, at_hz=at, name=line.name, better="lower")
@@ -173,12 +202,18 @@ def _line_results(line: LineNoise, values: Values, setting: Setting) -> tuple[Re
     return tuple(results)
 
 
-def _of_density(value: Callable[[float], float], own: Source, given: Mapping[Source, float]) -> float:
-    return float(value(given[own]))
+def _belongs(line: str, what: str, value: Quantity, setting: Setting) -> Source:
+    """What belongs to the circuit is the same error whenever it is used as written."""
+    return Source("stage", setting.chain, line, what, value.written)
 
 
-def _phase_noise(density: float, values: Values) -> float:
-    return float(phase_noise_from_pushing(density, values["pushing"].value, values["offset"].value))
+def _modulated(value: Callable[[float, float], float], given: Mapping[Source, float]) -> float:
+    density, slope = given.values()
+    return float(value(density, slope))
+
+
+def _phase_noise(density: float, pushing: float, values: Values) -> float:
+    return float(phase_noise_from_pushing(density, pushing, values["offset"].value))
 
 
 @dataclass(frozen=True, slots=True)
@@ -215,7 +250,11 @@ def _arrival(
         inputs[(line.name, "psrr")] = line.psrr
     level, parts = propagate(lambda given: through.level(dict(given)), inputs)
     place = values.place("stage")
-    sources = {fresh(place, f"{name} {what}"): part for (name, what), part in parts.items()}
+    psrr = {line.name: line.values["psrr"] for line in reaching}
+    sources = {
+        _belongs(name, what, psrr[name], setting) if what == "psrr" else fresh(place, f"{name} {what}"): part
+        for (name, what), part in parts.items()
+    }
     rise = float(db_from_ratio(1 + ratio_from_db(level - node.noise_dbm)))
     share = 1 - 1 / ratio_from_db(rise) if isfinite(rise) else nan
     results = (

@@ -89,6 +89,12 @@ def _said(part: Heat) -> list[Piece]:
         words = f"{part.name}: no sink is good enough at this power and ambient temperature."
         pieces.append(Note(words, "caution"))
     case, ambient = part.given.get("case"), part.given.get("ambient")
+    if case is not None and ambient is not None and part.power_w > 0 and case <= ambient:
+        words = f"{part.name}: its case reads no warmer than ambient although it turns power to heat; read both again."
+        pieces.append(Note(words, "caution"))
+    if case is None and "sink_ambient" in part.given and "case_sink" not in part.given:
+        words = f"{part.name}: nothing is stated between case and sink; it is taken as no resistance at all."
+        pieces.append(Text(words))
     if case is not None and ambient is not None and part.power_w > 0 and case > ambient:
         there = show_value((case - ambient) / part.power_w, "K/W")
         pieces.append(Text(f"{part.name}: from case to ambient it has {there}, by the temperatures as measured."))

@@ -54,12 +54,13 @@ class Arrival:
 
 @dataclass(frozen=True, slots=True)
 class Supply:
-    """All lines of one mapping, and their sum at a stage where one is named."""
+    """All lines of one mapping, and their sum at a stage where one is named; `silent` says why there is none."""
 
     name: str
     lines: tuple[LineNoise, ...]
     arrival: Arrival | None
     results: tuple[Result, ...]
+    silent: str
 
 
 def show_supply(block: Block, outcome: Outcome, view: View) -> list[Piece]:
@@ -94,7 +95,7 @@ def _table(supply: Supply) -> Table:
 def _arrival(supply: Supply) -> list[Piece]:
     found = supply.arrival
     if found is None:
-        return []
+        return [Text(f"{supply.silent[0].upper()}{supply.silent[1:]}.")] if supply.silent else []
     width, where = show_frequency(found.bandwidth_hz), show_frequency(found.frequency_hz)
     words = f"At {found.stage}, in {width}, {show_value(found.level_dbm, 'dBm')} of supply noise arrive"
     if isnan(found.noise_dbm):

@@ -11,7 +11,7 @@ from logbook.book.checks import check_chains
 from logbook.book.comparing import compare_all
 from logbook.book.consequences import drop_consequences
 from logbook.book.history import History, read_history
-from logbook.book.reading import ReadFile, read_file
+from logbook.book.reading import Read, ReadFile, read_file
 from logbook.book.sources import SourceFile, file_reader
 from logbook.compare.verdicts import Rules
 from logbook.findings import Findings
@@ -93,12 +93,14 @@ class Book:
         )
 
 
-def make_book(sources: Iterable[SourceFile], folder: Path | None, settings: Settings | None = None) -> Book:
+def make_book(
+    sources: Iterable[SourceFile], folder: Path | None, settings: Settings | None = None, read: Read = read_file
+) -> Book:
     """Read, resolve, calculate and compare a whole logbook. Nothing in it raises: faults are in the book's problems."""
     settings = settings or Settings()
     problems = Problems()
     kinds = registry()
-    files = {source.path: read_file(source, kinds, problems) for source in sources}
+    files = {source.path: read(source, kinds, problems) for source in sources}
     entries = [file.entry for file in files.values() if file.entry is not None]
     predicted = Predictor()
 

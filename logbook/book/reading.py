@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
 from datetime import date
 
@@ -12,7 +12,7 @@ from logbook.entry_text import EntryText, Fence, decode, scan
 from logbook.fields import Asked, read_mapping
 from logbook.kind import Kind
 from logbook.model import BUILT, STATES, Block, Entry, Values
-from logbook.problems import Place, Problems, did_you_mean
+from logbook.problems import Place, Problem, Problems, did_you_mean
 from logbook.yaml_nodes import Mapping as YamlMapping
 from logbook.yaml_nodes import Node, Scalar, Sequence, read_yaml
 
@@ -46,6 +46,25 @@ def read_file(source: SourceFile, kinds: Mapping[str, Kind], problems: Problems)
     if front is None:
         return ReadFile(source.path, written, None)
     return ReadFile(source.path, written, _entry(source.path, front, blocks, problems))
+
+
+Read = Callable[[SourceFile, Mapping[str, Kind], Problems], ReadFile]
+
+
+class Remembering:
+    """Reads files as `read_file` does, but one whose bytes are as before only once: for books made again and again."""
+
+    def __init__(self) -> None:
+        self._known: dict[str, tuple[SourceFile, ReadFile, tuple[Problem, ...]]] = {}
+
+    def read(self, source: SourceFile, kinds: Mapping[str, Kind], problems: Problems) -> ReadFile:
+        """Read one file; the kinds must be the same every time."""
+        known = self._known.get(source.path)
+        if known is None or known[0] != source:
+            found = Problems()
+            known = self._known[source.path] = (source, read_file(source, kinds, found), tuple(found))
+        problems.extend(known[2])
+        return known[1]
 
 
 def _front(written: EntryText, problems: Problems) -> YamlMapping | None:

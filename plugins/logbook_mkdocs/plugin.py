@@ -20,7 +20,7 @@ from mkdocs.structure.nav import Navigation
 from mkdocs.structure.pages import Page as SitePage
 from mkdocs.utils.templates import TemplateContext
 
-from logbook.book import Book, SourceFile, find_sources, make_book
+from logbook.book import Book, Remembering, SourceFile, find_sources, make_book
 from logbook.cache import Cache
 from logbook.entry_text import decode
 from logbook.failing import failure_words, failures
@@ -59,6 +59,10 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
     site_files: Files
     marks: dict[str, str]
 
+    def __init__(self) -> None:
+        self.reading = Remembering()
+        self.marks = {}
+
     def on_startup(self, *, command: Literal["build", "gh-deploy", "serve"], dirty: bool) -> None:
         """Defined, so that MkDocs keeps this instance between rebuilds."""
         self.serving = command == "serve"
@@ -87,7 +91,7 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
         folder = Path(config.docs_dir)
         sources = {source.path: source for source in find_sources(folder)}
         with _no_collecting():
-            self.book = make_book(sources.values(), folder, self.options.settings)
+            self.book = make_book(sources.values(), folder, self.options.settings, self.reading.read)
         self.entries = {entry.path: entry for entry in self.book.entries}
         self.site_files = files
         # A page of that name which somebody wrote stands as it is.

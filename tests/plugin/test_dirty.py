@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from pathlib import Path
+from threading import current_thread
+from threading import enumerate as enumerate_threads
 
 import pytest
 from building import CHAIN, FRONT, READING, Project, fresh_config, main_of
@@ -204,3 +206,32 @@ def test_pages_that_do_not_depend_on_what_was_saved_are_not_built(
     written = served.again()
     assert path.replace(".md", ".html") in written
     assert {f"{name}.html" for name in others} & written == set()
+
+
+def test_a_fault_in_a_file_that_was_not_saved_is_told_again(
+    logbook: Project, tmp_path: Path, caplog: pytest.LogCaptureFixture
+) -> None:
+    replaced("2026-01-14-again.md", "2.4(1) dB", "2.4(1) dBm")(logbook)
+    served = Served(logbook, tmp_path / "whole")
+
+    def told() -> list[str]:
+        return [r.getMessage() for r in caplog.records if "2026-01-14-again.md:" in r.getMessage()]
+
+    first = told()
+    assert len(first) == 1
+    caplog.clear()
+    replaced("about.md", "Who I am.", "Who I was.")(logbook)
+    served.again()
+    assert told() == first
+
+
+def test_the_results_follow_a_save(logbook: Project, tmp_path: Path) -> None:
+    served = Served(logbook, tmp_path / "whole")
+    replaced("2026-01-14-again.md", "2.4(1) dB", "3.4(1) dB")(logbook)
+    served.again()
+    for thread in enumerate_threads():
+        if thread.daemon and thread is not current_thread():
+            thread.join(10)
+    served.built_whole()
+    results = "data/results.json"
+    assert (logbook.site / results).read_bytes() == (served.whole / results).read_bytes()

@@ -258,6 +258,20 @@ def _apply(stages: list[Stage], step: Step, problems: Problems) -> bool:
     return True
 
 
+def same_hardware(before: Chain, after: Chain) -> Chain:
+    """A chain written out again, in which what is as it was keeps its source: one tolerance, one unknown error."""
+    old = {stage.name: stage.parameters for stage in before.stages}
+    stages = tuple(
+        replace(stage, parameters={n: _same(old.get(stage.name, {}).get(n), p) for n, p in stage.parameters.items()})
+        for stage in after.stages
+    )
+    return replace(after, stages=stages)
+
+
+def _same(old: Parameter | None, new: Parameter) -> Parameter:
+    return old if old is not None and (old.value, old.u) == (new.value, new.u) else new
+
+
 def changed_stages(before: Chain | None, after: Chain) -> dict[str, str]:
     """What happened to each stage of `after` since `before`: name -> new or changed."""
     if before is None:
@@ -267,6 +281,6 @@ def changed_stages(before: Chain | None, after: Chain) -> dict[str, str]:
     for stage in after.stages:
         if stage.name not in old:
             said[stage.name] = "new"
-        elif stage != old[stage.name]:
+        elif replace(stage, place=old[stage.name].place) != old[stage.name]:
             said[stage.name] = "changed"
     return said

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping, Sequence
 from typing import Any
 
-from logbook.hardware import Chain, Step, apply_steps
+from logbook.hardware import Chain, Step, apply_steps, same_hardware
 from logbook.kinds.change import Change
 from logbook.model import Block, Entry
 from logbook.problems import Place, Problems
@@ -34,7 +34,8 @@ def make_chains(
             if _claimed(name, revision, block, entry, problems):
                 continue
             if isinstance(each, Chain):
-                revision.chains[name] = each
+                before = parent.chains.get(name) if parent is not None else None
+                revision.chains[name] = each if before is None else same_hardware(before, each)
                 revision.broken.discard(name)
                 revision.made[name] = Made(full=True, entry=entry.path, line=block.line)
             else:

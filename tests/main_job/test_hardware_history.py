@@ -8,6 +8,7 @@ import pytest
 from workshop import block, book_of, chain, change, delta, entry, reading, totals
 
 from logbook.book import Book, SourceFile
+from logbook.hardware import changed_stages
 from logbook.prediction import Terms
 
 START = """name: lna, gain: 15 dB, nf: 2 dB, oip3: 20 dBm
@@ -178,6 +179,15 @@ def test_predicted_delta_owes_no_doubt_to_what_did_not_change() -> None:
     # The amplifier is one and the same; both pads count: hypot(0.1, 0.2).
     assert found.u == pytest.approx(math.hypot(0.1, 0.2))
     assert found.verdict == "changed"
+
+
+def test_a_stage_that_is_written_out_again_as_it_was_is_the_same_stage() -> None:
+    start = "name: lna, gain: 15 ± 1 dB, nf: 2 dB\n name: pad, loss: 3.0(1) dB"
+    again = "name: lna, gain: 15 ± 1 dB, nf: 2 dB\n name: pad, loss: 1.0(2) dB"
+    book = book_of(entry("01-01", chain(start), revision="A"), entry("02-01", chain(again), revision="B"))
+    assert delta(book, "rx/gain", "B", "predicted").u == pytest.approx(math.hypot(0.1, 0.2))
+    before, after = (book.revisions[label].chains["rx"] for label in "AB")
+    assert changed_stages(before, after) == {"pad": "changed"}
 
 
 def test_predicted_delta_by_something_without_a_tolerance_is_not_certain() -> None:

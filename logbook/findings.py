@@ -221,17 +221,27 @@ class TodoWords:
     closes: tuple[tuple[str, Place], ...] = ()
 
 
-@dataclass(slots=True)
+@dataclass
 class Findings:
-    """All that comparing found, in the order of the entries."""
+    """All that comparing found, in the order of the entries; what only pages and files show is made when asked for."""
 
     deltas: list[Delta] = field(default_factory=list)
-    agreement: list[Agreement] = field(default_factory=list)
     targets: list[TargetVerdict] = field(default_factory=list)
     regressions: list[Regression] = field(default_factory=list)
     todo: list[Todo] = field(default_factory=list)
     parts: list[Part] = field(default_factory=list)
-    spreads: list[Spread] = field(default_factory=list)
+    make_agreement: Callable[[], list[Agreement]] = list
+    make_spreads: Callable[[], list[Spread]] = list
+
+    @cached_property
+    def agreement(self) -> list[Agreement]:
+        """Measured results against their predictions."""
+        return self.make_agreement()
+
+    @cached_property
+    def spreads(self) -> list[Spread]:
+        """Repeated readings that differ by more than their doubt."""
+        return self.make_spreads()
 
     def deltas_to(self, revision: str, *, basis: str | None = None) -> list[Delta]:
         """The deltas of a revision against its ancestors."""

@@ -10,7 +10,7 @@ from logbook.compare.deltas import by_key, chain_deltas, measured_deltas
 from logbook.compare.regressions import regressions, spreads
 from logbook.compare.targets import judge_target
 from logbook.compare.verdicts import Rules
-from logbook.findings import Delta, Findings, TargetVerdict, Todo
+from logbook.findings import Agreement, Delta, Findings, TargetVerdict, Todo
 from logbook.hardware import Chain
 from logbook.model import PLANNED, PREDICTED, Result
 from logbook.prediction import Prediction, Terms
@@ -25,18 +25,18 @@ def compare_all(
 ) -> Findings:
     """Compare everything with everything that it may be compared with."""
     measured = [r for r in results if r.basis != PREDICTED]
-    own: dict[str, dict[str, list[Result]]] = {}
-    for label in history.revisions:
-        own[label] = by_key(r for r in measured if r.revision == label)
-    findings = Findings(todo=_todo(history, problems), parts=history.parts)
-    for label, revision in history.revisions.items():
-        findings.deltas += deltas_of(revision, history, own, predict, rules)
-        findings.spreads += spreads(own[label], rules)
+    of: dict[str, list[Result]] = {label: [] for label in history.revisions}
     for result in measured:
-        chain = _chain_of(result, history)
-        found = agreement(result, chain, predict, rules) if chain is not None else None
-        if found is not None:
-            findings.agreement.append(found)
+        of.setdefault(result.revision, []).append(result)
+    own = {label: by_key(found) for label, found in of.items()}
+    findings = Findings(
+        todo=_todo(history, problems),
+        parts=history.parts,
+        make_agreement=lambda: _agreement(measured, history, predict, rules),
+        make_spreads=lambda: [spread for label in history.revisions for spread in spreads(own[label], rules)],
+    )
+    for revision in history.revisions.values():
+        findings.deltas += deltas_of(revision, history, own, predict, rules)
     findings.targets = _targets(history, own, predict, rules)
     findings.regressions = regressions(
         findings.deltas,
@@ -46,6 +46,16 @@ def compare_all(
         problems,
     )
     return findings
+
+
+def _agreement(measured: Sequence[Result], history: History, predict: Predict, rules: Rules) -> list[Agreement]:
+    """Every measured result that has a prediction, against it."""
+    found = []
+    for result in measured:
+        chain = _chain_of(result, history)
+        if chain is not None:
+            found.append(agreement(result, chain, predict, rules))
+    return [each for each in found if each is not None]
 
 
 def _chain_of(result: Result, history: History) -> Chain | None:

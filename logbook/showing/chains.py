@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from math import isfinite, isnan
+from math import isfinite
 
 from logbook.compare.deltas import chain_deltas
 from logbook.hardware import Chain, Stage, changed_stages
@@ -15,6 +15,7 @@ from logbook.pieces import (
     Box,
     Chart,
     Diagram,
+    Folded,
     Items,
     Line,
     Note,
@@ -24,13 +25,14 @@ from logbook.pieces import (
     Table,
     Text,
 )
-from logbook.prediction import FIRST_ORDER_UP_TO_DB, Prediction, Terms, by_monte_carlo, wide_inputs
+from logbook.prediction import Prediction, Terms
 from logbook.quantity_display import show_frequency, show_value
+from logbook.showing.cascade import bandwidth_hz, cascade_table, first_order, further_table, totals_table
 from logbook.showing.cautions import power_caution
 from logbook.showing.deltas import deltas_table
 from logbook.showing.level_check import level_check
 from logbook.showing.plans import plan_pieces
-from logbook.showing.words import decibels, difference_unit, percent, quantity_words
+from logbook.showing.words import decibels, percent
 
 
 def show_chain(block: Block, outcome: Outcome, view: View) -> list[Piece]:
@@ -77,7 +79,8 @@ def chain_pieces(prediction: Prediction, before: Chain | None) -> list[Piece]:
     pieces: list[Piece] = [diagram(prediction, before), *warnings(prediction)]
     if prediction.chain.level is not None:
         pieces.append(level_plan(prediction))
-    pieces += [totals_table(prediction), *first_order(prediction), cascade_table(prediction), *level_check(prediction)]
+    pieces += [totals_table(prediction), *first_order(prediction), cascade_table(prediction)]
+    pieces += [Folded("More, stage by stage", (further_table(prediction),)), *level_check(prediction)]
     shares = shares_picture(prediction)
     if shares is not None:
         pieces.append(shares)
@@ -143,78 +146,8 @@ def level_plan(prediction: Prediction) -> Picture:
 
 
 def _input_noise(prediction: Prediction) -> float:
-    chain, terms = prediction.chain, prediction.terms
-    width = terms.bandwidth_hz or (chain.bandwidth_hz.value if chain.bandwidth_hz is not None else float("nan"))
-    return float(noise_power_dbm(density_from_temperature(prediction.source_temperature_k), width))
-
-
-def first_order(prediction: Prediction) -> list[Piece]:
-    """Where an input's doubt is too wide for first order: the totals' doubt both ways, and which one is used."""
-    wide = wide_inputs(prediction.chain)
-    if not wide:
-        return []
-    drawn = by_monte_carlo(prediction.chain, prediction.terms)
-    rows: list[tuple[Line, ...]] = []
-    for name, total in prediction.totals.items():
-        other = drawn[name]
-        if total.u and other.u:
-            unit = difference_unit(total.unit)
-            rows.append((quantity_words(name), show_value(total.u, unit), show_value(other.u, unit)))
-    words = (
-        f"The doubt of {', '.join(wide)} is above {FIRST_ORDER_UP_TO_DB:g} dB, where propagation to first order is an "
-        "approximation. Verdicts use first order; beside it stands the same by 20,000 random draws."
-    )
-    head = ("total", "u, first order", "u, by Monte Carlo")
-    return [Note(words), Table(head, tuple(rows), "Doubt of the totals, both ways", frozenset({1, 2}))]
-
-
-def totals_table(prediction: Prediction) -> Table:
-    """The totals with their doubt, or with the reason why they are not known."""
-    rows: list[tuple[Line, ...]] = []
-    for name, total in prediction.totals.items():
-        known = show_value(total.value, total.unit, total.u)
-        rows.append((quantity_words(name), f"not known: {total.words}" if isnan(total.value) else known))
-    where = f" at {show_frequency(prediction.frequencies_hz[0])}"
-    return Table(("total", "predicted"), tuple(rows), f"Chain {prediction.chain.name}{where}", frozenset({1}))
-
-
-def cascade_table(prediction: Prediction) -> Table:
-    """The state of the chain behind each stage."""
-    rows: list[tuple[Line, ...]] = []
-    for node in prediction.nodes:
-        rows.append(
-            (
-                node.stage,
-                show_frequency(node.frequency_hz),
-                decibels(node.stage_gain_db, 2),
-                decibels(node.stage_nf_db, 2),
-                decibels(node.gain_db, 2),
-                decibels(node.nf_db, 2),
-                decibels(node.noise_dbm),
-                decibels(node.level_dbm),
-                decibels(node.iip3_dbm),
-                decibels(node.ip1db_dbm),
-                decibels(node.headroom_db),
-                percent(node.noise_share),
-                percent(node.iip3_share),
-            )
-        )
-    head = (
-        "stage",
-        "frequency",
-        "gain, dB",
-        "NF, dB",
-        "gain so far, dB",
-        "NF so far, dB",
-        "noise, dBm",
-        "level, dBm",
-        "IIP3 so far, dBm",
-        "IP1dB so far, dBm",
-        "headroom, dB",
-        "of the noise",
-        "of the distortion",
-    )
-    return Table(head, tuple(rows), "Stage by stage", frozenset(range(1, 13)))
+    density = density_from_temperature(prediction.source_temperature_k)
+    return float(noise_power_dbm(density, bandwidth_hz(prediction)))
 
 
 def shares_picture(prediction: Prediction) -> Picture | None:

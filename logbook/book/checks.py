@@ -1,10 +1,8 @@
-"""Checks of what the chains say: figures that no stage can have, and stages that get more than they bear."""
+"""Checks of what the chains say: stages that get more than they bear."""
 
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable
-
-import numpy as np
 
 from logbook.hardware import Chain
 from logbook.prediction import Prediction, Terms
@@ -26,15 +24,7 @@ def check_chains(
 
 
 def _check(chain: Chain, label: str, prediction: Prediction, problems: Problems, seen: set[tuple[Place, str]]) -> None:
-    stages = prediction.nominal
-    if stages is None:
-        return
-    own = np.asarray(stages.own_temperature_k)
-    for index, stage in enumerate(chain.stages):
-        if own[index] < 0 and _first(stage.place, "noise-figure", seen):
-            message = f"The noise figure of '{stage.name}' is lower than any stage of its sort can have."
-            hint = "With its image open a mixer's figure is 3 dB at least: is it a DSB figure, 'nf_dsb:'?"
-            problems.add(stage.place, "noise-figure", message, hint)
+    for index in range(len(chain.stages)):
         _overloaded(chain, label, prediction, index, problems, seen)
 
 

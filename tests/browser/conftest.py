@@ -5,11 +5,13 @@ from __future__ import annotations
 import shutil
 from collections.abc import Iterator
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 import pytest
 from demonstration import ARGUMENTS, ROOT, build, chromium
 
-api = pytest.importorskip("playwright.sync_api", reason="playwright is not installed")
+if TYPE_CHECKING:
+    from playwright import sync_api as api
 
 FAULTY = """---
 title: An entry with faults in it
@@ -34,10 +36,12 @@ first_line = "code of the reader's own, with a line that is far too long for any
 
 @pytest.fixture(scope="session")
 def browser() -> Iterator[api.Browser]:
+    # In here: a test run without browser tests needs no playwright.
+    playwright_api = pytest.importorskip("playwright.sync_api", reason="playwright is not installed")
     path = chromium()
     if path is None:
         pytest.skip("there is no Chromium on this machine")
-    with api.sync_playwright() as playwright:
+    with playwright_api.sync_playwright() as playwright:
         started = playwright.chromium.launch(executable_path=path, args=list(ARGUMENTS))
         yield started
         started.close()

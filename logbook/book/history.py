@@ -139,8 +139,13 @@ class _Maker:
 
     def _keep(self, found: Any) -> None:
         if isinstance(found, Bench):
+            self._once(
+                self.benches.get(found.name), found, f"Bench '{found.name}' is described", "Keep one of the two."
+            )
             self.benches[found.name] = found
         elif isinstance(found, Target):
+            hint = "Write both limits as one, such as '40 dB .. 44 dB', or give one of them a name or frequency."
+            self._once(self.history.targets.get(found.key), found, f"A target for {found.key} is set", hint)
             self.history.targets[found.key] = found
         elif isinstance(found, Accept):
             self.history.accepts.append(found)
@@ -148,6 +153,12 @@ class _Maker:
             self.history.parts.append(found)
         elif isinstance(found, TodoWords):
             self.history.todo.append((self.entry, found))
+
+    def _once(self, earlier: Bench | Target | None, found: Bench | Target, what: str, hint: str) -> None:
+        """A later entry may replace what an earlier one says; within one entry it is a slip."""
+        if earlier is not None and earlier.place.file == found.place.file:
+            message = f"{what} already in line {earlier.place.line} of this entry."
+            self.problems.add(found.place, "said-twice", message, hint)
 
 
 def _chains_before(revision: Revision | None, revisions: Mapping[str, Revision]) -> Mapping[str, Chain]:

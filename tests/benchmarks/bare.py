@@ -48,7 +48,8 @@ def _texts(book: Book, entries: Path, cache: Cache) -> dict[str, str]:
         # An empty line would end the HTML in some Markdown; here it costs nothing to leave it out.
         return re.sub(r"\n\s*\n", "\n", render(pieces, lambda to, anchor: None, lambda drawing: draw(drawing, cache)))
 
-    found = {page.path: f"# {page.title}\n\n<div>\n{html(list(page.pieces))}\n</div>\n" for page in generated_pages(book)}
+    pages = generated_pages(book)
+    found = {page.path: f"# {page.title}\n\n<div>\n{html(list(page.pieces))}\n</div>\n" for page in pages}
     found[HOME] = f"# Bench\n\n<div>\n{html(home_pieces(book))}\n</div>\n"
     for entry in book.entries:
         text = (entries / entry.path).read_text(encoding="utf-8")

@@ -232,8 +232,12 @@ def many(reader: Reader, *, least: int = 1) -> Reader:
     def read(node: Node, asked: Asked) -> tuple[Any, ...] | None:
         nodes = node.items if isinstance(node, YamlSequence) else (node,)
         found = [reader(item, asked) for item in nodes]
-        if len(found) < least:
+        if not found and least:
             asked.fault(node.place, "empty", f"An empty list stands at '{asked.what}'; expected one item at least.")
+            return None
+        if len(found) < least:
+            message = f"The list at '{asked.what}' is {len(found)} long; it needs {least} items at least."
+            asked.fault(node.place, "too-few", message)
             return None
         return None if any(item is None for item in found) else tuple(found)
 

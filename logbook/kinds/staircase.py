@@ -58,9 +58,9 @@ def calculate(block: Block, session: Session) -> Outcome:
         return Outcome()
     window = _window(values, setting)
     fit = fit_detector(steps.input_dbm, steps.output, window)
-    if isnan(fit.slope) or fit.points < 3:
-        message = f"No line goes through {fit.points} of the points within the fit."
-        session.fault(values.place("fit"), "fit", message, "A fit needs three points at least, at different levels.")
+    why = _no_line(fit, steps, window)
+    if why:
+        session.fault(values.place("fit"), "fit", why)
         return Outcome()
     detector = Calibration(
         name=values["name"],
@@ -76,6 +76,19 @@ def calculate(block: Block, session: Session) -> Outcome:
         window_dbm=window,
     )
     return Outcome(_results(detector, values, setting), detector)
+
+
+def _no_line(fit: DetectorFit, steps: Steps, window: tuple[float, float]) -> str:
+    """Why no line goes through the steps; nothing when one does."""
+    if fit.points < 3:
+        return f"{fit.points} of the steps lie within the fit; a line needs three at least."
+    levels = steps.input_dbm[(steps.input_dbm >= window[0]) & (steps.input_dbm <= window[1])]
+    if not np.ptp(levels) > 0:
+        return "All steps within the fit are at one level; a line needs different ones."
+    # A slope within its own expanded doubt of zero is none.
+    if isnan(fit.slope) or abs(fit.slope) <= 2 * fit.u_slope:
+        return "The output does not follow the level: within its doubt the line has no slope."
+    return ""
 
 
 def _window(values: Values, setting: Setting) -> tuple[float, float]:

@@ -207,7 +207,7 @@ GOOD = split(SETTINGS, noise(-106.0, -98.0), "name: good\naveraging: power")
 FAULTS = [
     (split(SETTINGS[:4], noise(-106.0, -98.0)), "lengths"),
     (split([3.0] * 5, noise(-106.0, -98.0)), "lengths"),
-    (split([3.0], [-90.0]), "empty"),
+    (split([3.0], [-90.0]), "too-few"),
     (split(SETTINGS, noise(-106.0, -98.0), "averaging: peak"), "peak"),
     (split(SETTINGS, noise(-106.0, -98.0), "averaging: rms"), "unknown-word"),
     (split(SETTINGS, noise(-106.0, -98.0), "control: vgx"), "unknown-stage"),

@@ -247,9 +247,11 @@ def test_drift_between_revisions() -> None:
 
 FAULTS = [
     (staircase(LEVELS, VOLTS[:-1]), "lengths"),
-    (staircase(LEVELS[:2], VOLTS[:2]), "empty"),
+    (staircase(LEVELS[:2], VOLTS[:2]), "too-few"),
     (staircase([-10.0] * 4, VOLTS[:4]), "fit"),
     (staircase(LEVELS, [1.0] * 7), "fit"),
+    # Nothing but noise: the slope is within its doubt.
+    (staircase(LEVELS, [0.40, 0.42, 0.39, 0.43, 0.38, 0.41, 0.40]), "fit"),
     (staircase(LEVELS, VOLTS, "fit: [0 dBm, 10 dBm]"), "fit"),
     (staircase(LEVELS, VOLTS, "fit: [-20 dBm, -10 dBm]"), "fit"),
     (staircase(LEVELS, VOLTS, "fit: -20 dBm"), "pair"),

@@ -7,7 +7,7 @@ from math import isnan
 from logbook.book import Book
 from logbook.compare.deltas import chain_deltas
 from logbook.compare.next_change import next_change
-from logbook.compare.verdicts import GONE, NEW
+from logbook.compare.verdicts import DISAGREES, GONE, NEW
 from logbook.findings import Delta
 from logbook.model import BUILT, PLANNED, PREDICTED
 from logbook.pages.links import entry_link
@@ -171,9 +171,8 @@ def _agreement(book: Book, revision: Revision) -> list[Piece]:
     pieces: list[Piece] = []
     if found:
         pieces += [Heading(2, "Measured against predicted"), agreement_table(found, "")]
-        for each in found:
-            if each.verdict == "disagrees":
-                pieces += shares_pieces(each)
+        shares = [piece for each in found if each.verdict == DISAGREES for piece in shares_pieces(each)]
+        pieces += folded("Where the differences could come from", shares)
     for spread in book.findings.spreads:
         if spread.revision == revision.label:
             unit = difference_unit(spread.unit)

@@ -41,9 +41,12 @@ def _output_level(result: Result, prediction: Prediction) -> Estimate | None:
     gain = prediction.totals["gain"]
     level = prediction.chain.level
     drive = result.conditions.drive_dbm
-    if drive is None:
-        drive = None if level is None else level.value
-    return None if drive is None else Estimate(gain.value + drive, "dBm", gain.parts, gain.words)
+    if drive is not None:
+        return Estimate(gain.value + drive, "dBm", gain.parts, gain.words)
+    if level is None:
+        return None
+    own = {level.source: level.u} if level.u else {}
+    return Estimate(gain.value + level.value, "dBm", {**(gain.parts or {}), **own} or None, gain.words)
 
 
 def agreement(result: Result, chain: Chain, predict: Predict, rules: Rules) -> Agreement | None:

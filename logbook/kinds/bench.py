@@ -79,6 +79,10 @@ due: 2027-02-01
 def declare(values: Values, session: Session) -> Bench | None:
     """The bench from this entry's date on."""
     name, since = values["bench"], session.entry.date.isoformat()
+    known = session.benches.get(name)
+    if known is not None and known.since == since:
+        # Described again on the same day: another source of error, so another date in all that names it.
+        since = f"{since}, later that day"
     reads: Any = values.get("reads", {})
     drives: Any = values.get("drives", {})
 

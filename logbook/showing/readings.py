@@ -55,7 +55,7 @@ def results_table(results: list[Result], view: View) -> Table:
                 _value(result),
                 _before(delta),
                 "" if delta is None else change(delta),
-                _verdict(delta),
+                _verdict(delta) if delta is not None else _stands_back(result, view),
             )
         )
     as_read = any(result.shown is not None for result in results)
@@ -67,6 +67,14 @@ def results_table(results: list[Result], view: View) -> Table:
         f"Results on revision {results[0].revision}",
         frozenset(place for place, i in enumerate(kept) if i in (1, 2, 3, 4)),
     )
+
+
+def _stands_back(result: Result, view: View) -> Line:
+    """A word for a reading that is not the one compared: another of this revision with the same key is."""
+    if isnan(result.value) or result.basis == PREDICTED:
+        return ""
+    other = any(d.key == result.key and d.after_result for d in view.findings.deltas_to(result.revision))
+    return Muted("another reading of this revision is compared") if other else ""
 
 
 def _value(result: Result) -> Line:

@@ -11,7 +11,7 @@ from uncertainties import umath
 from uncertainties.unumpy import std_devs
 from workshop import block, book_of, chain, change, delta, entry, reading
 
-from logbook.book import Book, Settings
+from logbook.book import Book, Settings, SourceFile, make_book
 from logbook.findings import Delta
 
 CHAIN = chain("name: amp, gain: 20 dB, nf: 3 dB")
@@ -208,3 +208,20 @@ def test_a_reading_after_the_calibration_was_due_is_marked() -> None:
     first, second = (r for r in book.results if r.basis == "measured")
     assert first.notes == ()
     assert any("due" in note and "2026-01-01" in note for note in second.notes)
+
+
+def test_a_bench_described_again_on_the_same_day_shares_nothing() -> None:
+    """Two entries of one day, a bench of one name in each: the instrument was changed in between."""
+    described = "```yaml bench\nbench: shack\nreads: {accuracy: ± 1 dB}\n```\n"
+    read = "```yaml reading\nat: 50 MHz\nbench: shack\nresults:\n  output_level: {} dBm\n```\n"
+    chain = "```yaml chain\nchain: rx\nsignal: 50 MHz\nstages:\n  - {name: lna, gain: 10 dB}\n```\n"
+    change = "```yaml change\nchain: rx\nsteps:\n  - set: lna\n    to: {gain: 11 dB}\n```\n"
+    front = "---\ntitle: T\ndate: 2026-01-01\nrevision: {}\n---\n"
+    files = {
+        "2026-01-01-a.md": front.format("A") + chain + described + read.format("-10.0(1)"),
+        "2026-01-01-b.md": front.format("B") + change + described + read.format("-9.0(1)"),
+    }
+    book = make_book([SourceFile(path, text.encode()) for path, text in files.items()], None)
+    (delta,) = [d for d in book.findings.deltas_to("B") if d.basis == "measured"]
+    # Limits of 1 dB are u = 0.577 dB on either side, 0.1 dB fresh in each (closed form).
+    assert delta.u == pytest.approx((2 * 1 / 3 + 2 * 0.1**2) ** 0.5)

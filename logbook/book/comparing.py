@@ -19,6 +19,9 @@ from logbook.revision import Revision
 
 Predict = Callable[[Chain, Terms], Prediction]
 
+# Revision -> key -> results in order.
+Results = dict[str, dict[str, list[Result]]]
+
 
 def compare_all(
     history: History, results: Sequence[Result], predict: Predict, rules: Rules, problems: Problems
@@ -29,6 +32,7 @@ def compare_all(
     for result in measured:
         of.setdefault(result.revision, []).append(result)
     own = {label: by_key(found) for label, found in of.items()}
+    planned = _planned(history, results)
     findings = Findings(
         todo=_todo(history, problems),
         parts=history.parts,
@@ -36,8 +40,8 @@ def compare_all(
         make_spreads=lambda: [spread for label in history.revisions for spread in spreads(own[label], rules)],
     )
     for revision in history.revisions.values():
-        findings.deltas += deltas_of(revision, history, own, predict, rules)
-    findings.targets = _targets(history, own, predict, rules)
+        findings.deltas += deltas_of(revision, history, own, planned, predict, rules)
+    findings.targets = _targets(history, own, planned, predict, rules)
     findings.regressions = regressions(
         findings.deltas,
         {label: findings.targets_of(label) for label in history.revisions},
@@ -46,6 +50,15 @@ def compare_all(
         problems,
     )
     return findings
+
+
+def _planned(history: History, results: Sequence[Result]) -> Results:
+    """What the blocks of a plan predict by revision and key, beside the totals of its chains."""
+    found: dict[str, list[Result]] = {label: [] for label in history.revisions}
+    for result in results:
+        if result.basis == PREDICTED and result.block not in ("chain", "change"):
+            found.setdefault(result.revision, []).append(result)
+    return {label: by_key(each) for label, each in found.items()}
 
 
 def _agreement(measured: Sequence[Result], history: History, predict: Predict, rules: Rules) -> list[Agreement]:
@@ -66,7 +79,8 @@ def _chain_of(result: Result, history: History) -> Chain | None:
 def deltas_of(
     revision: Revision,
     history: History,
-    own: dict[str, dict[str, list[Result]]],
+    own: Results,
+    planned: Results,
     predict: Predict,
     rules: Rules,
 ) -> list[Delta]:
@@ -76,25 +90,28 @@ def deltas_of(
         return []
     parent = ancestors[0]
     found = chain_deltas(revision, parent, predict, rules)
-    if revision.state != PLANNED:
-        lines = [(each.label, own[each.label]) for each in ancestors]
+    lines = [(each.label, own[each.label]) for each in ancestors]
+    if revision.state == PLANNED:
+        found += measured_deltas(planned[revision.label], lines, revision.label, rules, ())
+    else:
         found += measured_deltas(own[revision.label], lines, revision.label, rules, set(revision.made))
     return found
 
 
-def _targets(
-    history: History, own: dict[str, dict[str, list[Result]]], predict: Predict, rules: Rules
-) -> list[TargetVerdict]:
+def _targets(history: History, own: Results, planned: Results, predict: Predict, rules: Rules) -> list[TargetVerdict]:
     found: list[TargetVerdict] = []
     by_revision: dict[tuple[str, str], TargetVerdict] = {}
-    flat = {label: [r for each in keys.values() for r in each] for label, keys in own.items()}
+    flat, said = (
+        {label: [r for each in keys.values() for r in each] for label, keys in by_revision_and_key.items()}
+        for by_revision_and_key in (own, planned)
+    )
     for label, revision in history.revisions.items():
         ancestors = history.ancestors(label)
         parent = ancestors[0] if ancestors else None
         for target in history.targets.values():
             before = by_revision.get((parent.label, target.key)) if parent is not None else None
             chains = parent.chains if parent is not None else {}
-            verdict = judge_target(target, revision, flat[label], before, predict, chains, rules)
+            verdict = judge_target(target, revision, [*said[label], *flat[label]], before, predict, chains, rules)
             by_revision[(label, target.key)] = verdict
             found.append(verdict)
     return found

@@ -48,7 +48,10 @@ def judge_target(
     parent_chains: Mapping[str, Chain],
     rules: Rules,
 ) -> TargetVerdict:
-    """One target against one revision. `results` are the revision's own measured ones, in order."""
+    """One target against one revision.
+
+    `results` are its own, in order: what the blocks of its plan predict, then what was measured.
+    """
     chain = revision.chains.get(target.chain)
     signal = chain.signal_hz if chain is not None else None
     own = [result for result in results if fits(target, result, signal)]
@@ -64,6 +67,8 @@ def judge_target(
     closes = None
     if revision.state == PLANNED and parent is not None:
         closes = _closes(target, chain, parent_chains.get(target.chain), parent, predict)
+        if own and parent.gap > 0 and not isnan(gap):
+            closes = 1 - gap / parent.gap
     return TargetVerdict(
         target, revision.label, found.basis, found.value, found.u, probability, verdict, why, gap, closes
     )

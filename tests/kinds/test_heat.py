@@ -116,12 +116,39 @@ def test_targets_regressions_and_their_acceptance() -> None:
     assert not any(r.accepted for r in found.findings.regressions)
 
 
-def test_on_a_plan_it_is_a_prediction() -> None:
-    text = "name: pa\npower: 6 W\njunction_case: 3 K/W\nsink_ambient: 5 K/W\nambient: 25 degC\nmaximum: 175 degC"
-    plan = entry("02-01", heat(text), revision="B", front="state: planned\n")
-    found = book_of(entry("01-01", CHAIN, revision="A"), plan)
-    assert {r.basis for r in found.results if r.block == "heat"} == {"predicted"}
-    assert not [d for d in found.findings.deltas if d.quantity.startswith("junction") and d.basis != "predicted"]
+PLANNED = "name: pa\npower: 6 W\njunction_case: 3 K/W\nsink_ambient: {} K/W\nambient: 25 degC\nmaximum: 175 degC"
+
+
+def test_a_plan_is_a_prediction_against_its_target_and_the_revision_before() -> None:
+    """25 + 6 * (3 + 20) = 163 degC now, 25 + 6 * (3 + 5) = 73 degC planned: of the 48 K missing all 48 and 42 more."""
+    target = block("target", "quantity: junction_margin\nname: pa\nlimit: '>= 60 K'")
+    step = block("change", "chain: tx\nsteps:\n  - set: pa\n    to: {gain: 19 dB}")
+    plan = entry("02-01", step, heat(PLANNED.format(5)), revision="B", front="state: planned\n")
+    first = entry("01-01", CHAIN, target, heat(PLANNED.format(20)), revision="A")
+    found = book_of(first, plan)
+    assert {(r.revision, r.basis) for r in found.results if r.block == "heat"} == {("A", "derived"), ("B", "predicted")}
+    changed = delta(found, "tx/junction#pa", "B", "predicted")
+    assert (changed.verdict, round(changed.delta, 9)) == ("better", -90.0)
+    verdicts = {t.revision: t for t in found.findings.targets}
+    assert (verdicts["A"].basis, verdicts["A"].verdict, verdicts["A"].gap) == ("derived", "misses", 48.0)
+    assert (verdicts["B"].basis, verdicts["B"].verdict) == ("predicted", "meets")
+    assert verdicts["B"].closes == pytest.approx(90 / 48)
+    assert not found.findings.regressions
+
+
+def test_what_was_measured_takes_the_place_of_what_was_planned() -> None:
+    target = block("target", "quantity: junction_margin\nname: pa\nlimit: '>= 60 K'")
+    step = block("change", "chain: tx\nsteps:\n  - set: pa\n    to: {gain: 19 dB}")
+    plan = entry("02-01", step, heat(PLANNED.format(5)), revision="B", front="state: planned\n")
+    first = entry("01-01", CHAIN, target, heat(PLANNED.format(20)), revision="A")
+    built = block("change", "chain: tx\nas_planned: true")
+    not_yet = book_of(first, plan, entry("03-01", built, revision="B"))
+    assert [t.basis for t in not_yet.findings.targets if t.revision == "B"] == ["predicted"]
+    hot = heat("name: pa\npower: 6 W\njunction_case: 3 K/W\ncase: 110 degC\nmaximum: 175 degC")
+    found = book_of(first, plan, entry("03-01", built, hot, revision="B"))
+    last = next(t for t in found.findings.targets if t.revision == "B")
+    assert (last.basis, last.verdict, last.value) == ("derived", "misses", 47.0)
+    assert delta(found, "tx/junction#pa", "B", "derived").delta == pytest.approx(128 - 163)
 
 
 @pytest.mark.parametrize(

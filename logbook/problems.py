@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
-from difflib import get_close_matches
 from typing import NamedTuple
 
 PROBLEM = "problem"
@@ -93,6 +92,9 @@ class Problems:
 def did_you_mean(word: str, known: Iterable[str]) -> str:
     """A sentence that names the likely word, or that lists all of a short list; else nothing."""
     words = list(known)
+    # Needed where something is wrong only, and slow to import.
+    from difflib import get_close_matches
+
     close = get_close_matches(word.lower(), [w.lower() for w in words], n=1, cutoff=0.6)
     if close:
         likely = next(w for w in words if w.lower() == close[0])

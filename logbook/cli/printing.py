@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
+import os
 import sys
 from collections.abc import Iterable, Sequence
 from pathlib import Path
-from shutil import get_terminal_size
 
 from logbook.pieces import Piece
 from logbook.problems import CAUTION, Problem
@@ -27,4 +27,16 @@ def print_pieces(pieces: Sequence[Piece]) -> None:
     """Pieces as text, as wide as the terminal."""
     from logbook.terminal import render
 
-    print(render(pieces, get_terminal_size((100, 24)).columns).rstrip("\n"))
+    print(render(pieces, _columns()).rstrip("\n"))
+
+
+def _columns() -> int:
+    """The terminal's width; 100 where the output is none."""
+    try:
+        return int(os.environ.get("COLUMNS", "")) or 100
+    except ValueError:
+        pass
+    try:
+        return os.get_terminal_size(sys.stdout.fileno()).columns or 100
+    except (OSError, ValueError, AttributeError):
+        return 100

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 from logbook.book import Book
 from logbook.model import PREDICTED
-from logbook.pages.revision import regression_pieces
 from logbook.pieces import Heading, Note, Piece, Text
 from logbook.problems import CAUTION
 from logbook.revision import Revision
 from logbook.showing.deltas import moved_pieces
+from logbook.showing.regressions import regression_pieces
 from logbook.showing.targets import targets_table
 
 
@@ -40,7 +40,7 @@ def _summary(book: Book) -> str:
 def _regressions(book: Book) -> list[Piece]:
     pieces: list[Piece] = []
     for revision in book.revisions.values():
-        found = regression_pieces(book, revision)
+        found = regression_pieces(book.findings, revision.label)
         pieces += [Text(f"On revision {revision.label}:"), *found] if found else []
     return [Heading(2, "Regressions"), *pieces] if pieces else []
 

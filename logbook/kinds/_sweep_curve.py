@@ -158,8 +158,8 @@ def _points(values: Values, session: Session) -> Trace | None:
         session.fault(place, "points", message, "Such as [21.390 MHz, -63.1 dB].")
         return None
     x = np.array([point.value for point, _ in points])
-    if len(points) < _FEWEST or not np.all(np.diff(x) > 0):
-        session.fault(place, "points", "The points' frequencies must rise, and three are needed at least.")
+    if x[0] < 0 or not np.all(np.diff(x) > 0):
+        session.fault(place, "points", "The points' frequencies must rise, and none of them is below zero.")
         return None
     return Trace(values["name"], "", x, "Hz", np.array([y.value for _, y in points]), units.pop())
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import replace
-from math import isnan
+from math import isfinite, isnan
 
 from logbook.emissions import Emission, Judged, LineLevel
 from logbook.entry_text import decode
@@ -142,7 +142,8 @@ def _line(values: Values, carrier: Result, setting: Setting) -> LineLevel | None
 
 def _name(line_hz: float, carrier_hz: float) -> str:
     """`harmonic` for a whole multiple of the carrier's frequency, `spurious` for any other line."""
-    order = round(line_hz / carrier_hz)
+    multiple = line_hz / carrier_hz
+    order = round(multiple) if isfinite(multiple) else 0
     return "harmonic" if order >= 2 and abs(line_hz - order * carrier_hz) <= _WHOLE * line_hz else "spurious"
 
 

@@ -5,10 +5,10 @@ from __future__ import annotations
 from logbook.book import Book
 from logbook.kinds import registry
 from logbook.model import BUILT, Block, Entry
-from logbook.pages.revision import regression_pieces
 from logbook.pieces import Note, Piece, Span, Text, Written
 from logbook.showing.deltas import revision_change
 from logbook.showing.readings import show_results
+from logbook.showing.regressions import regression_pieces
 
 
 def block_pieces(book: Book, entry: Entry, block: Block) -> list[Piece]:
@@ -44,4 +44,4 @@ def tail_pieces(book: Book, entry: Entry) -> list[Piece]:
     if revision is None:
         return []
     own = {result.key for result in book.results if result.entry == entry.path and result.basis != "predicted"}
-    return regression_pieces(book, revision, own) if own else []
+    return regression_pieces(book.findings, revision.label, own) if own else []

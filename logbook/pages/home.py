@@ -8,11 +8,11 @@ from logbook.book import Book
 from logbook.findings import Target, TargetVerdict
 from logbook.model import PREDICTED, TRIAL
 from logbook.pages.links import entry_link
-from logbook.pages.revision import regression_pieces
 from logbook.pieces import Card, Cards, Heading, Items, Line, Link, Muted, Note, Piece, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_value
 from logbook.revision import Revision
 from logbook.showing.deltas import moved_pieces
+from logbook.showing.regressions import regression_pieces
 from logbook.showing.targets import missing_words, probability_words, target_words
 from logbook.showing.words import difference_unit, revision_link
 
@@ -69,7 +69,7 @@ def _unaccepted(book: Book) -> list[Piece]:
     for revision in book.revisions.values():
         keys = {r.key for r in book.findings.regressions_of(revision.label) if not r.accepted}
         if keys:
-            found += regression_pieces(book, revision, keys)
+            found += regression_pieces(book.findings, revision.label, keys)
     return [Heading(2, "Regressions not accepted"), *found] if found else []
 
 

@@ -11,7 +11,7 @@ from logbook.compare.verdicts import DISAGREES, GONE, NEW
 from logbook.findings import Delta
 from logbook.model import BUILT, PLANNED, PREDICTED
 from logbook.pages.links import entry_link
-from logbook.pieces import Heading, Items, Line, Note, Piece, Strong, Table, Text, Verdict
+from logbook.pieces import Heading, Items, Line, Note, Piece, Table, Text, Verdict
 from logbook.prediction import Terms
 from logbook.quantity_display import show_delta, show_value
 from logbook.revision import Revision
@@ -27,6 +27,7 @@ from logbook.showing.deltas import (
 )
 from logbook.showing.next_change import next_change_pieces
 from logbook.showing.plans import plan_pieces
+from logbook.showing.regressions import regression_pieces
 from logbook.showing.targets import targets_table
 from logbook.showing.words import change, difference_unit, reason, result_words
 
@@ -39,7 +40,7 @@ def revision_pieces(book: Book, revision: Revision) -> list[Piece]:
     if revision.broken:
         words = "A problem in the entries keeps part of this revision from being computed."
         pieces.append(Note(words, "problem"))
-    pieces += regression_pieces(book, revision)
+    pieces += regression_pieces(book.findings, revision.label)
     pieces += _changes(book, revision)
     pieces += _targets(book, revision)
     pieces += _alternatives(book, revision)
@@ -68,21 +69,6 @@ def _entries(book: Book, revision: Revision) -> list[Piece]:
         lines += [("planned: ", *entry_link(titles[path])) for path in plan.entries]
     lines += [entry_link(titles[path]) for path in revision.entries]
     return [Heading(2, "Entries"), Items(tuple(lines))] if lines else []
-
-
-def regression_pieces(book: Book, revision: Revision, keys: set[str] | None = None) -> list[Piece]:
-    """What got worse with this revision, with what was said of it; `keys` keeps only these."""
-    pieces: list[Piece] = []
-    for found in book.findings.regressions_of(revision.label):
-        if keys is not None and found.key not in keys:
-            continue
-        unit = difference_unit(found.unit)
-        size = "" if found.delta is None or isnan(found.delta) else f" by {show_value(abs(found.delta), unit)}"
-        what = "a target met before is missed now" if found.kind == "target" else f"worse{size}"
-        said = f"accepted: {found.why}" if found.accepted else "not accepted"
-        words = (Strong(found.key), f": {what}, against revision {found.from_}; {said}.")
-        pieces.append(Note(words, "plain" if found.accepted else "problem"))
-    return pieces
 
 
 def _changes(book: Book, revision: Revision) -> list[Piece]:

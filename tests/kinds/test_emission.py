@@ -93,6 +93,8 @@ def test_harmonics_and_other_lines_by_name() -> None:
     assert keys == ["tx/output_level@50.1MHz", "tx/harmonic@100.2MHz", "tx/harmonic@150.301MHz", "tx/spurious@71MHz"]
     assert {r.better for r in found.results if r.unit == "dBc"} == {"lower"}
     assert "2nd harmonic" in shown(found)
+    far = book(emission("at: 1e-300 Hz\ncarrier: 5 W\nlines: [{at: 1e300 Hz, level: -60 dBc}]"))
+    assert [r.quantity for r in far.results if r.unit == "dBc"] == ["spurious"]
 
 
 def relative(rule: str = "") -> str:

@@ -375,6 +375,7 @@ FAULTS = [
     (HEAD, "sweep"),
     (HEAD + f"file: f.csv\n{POINTS}", "sweep"),
     (HEAD + "points: [[3 MHz, -9 dB], [2 MHz, -1 dB], [1 MHz, -9 dB]]", "points"),
+    (HEAD + "points: [[-1 MHz, -9 dB], [2 MHz, -1 dB], [3 MHz, -9 dB]]", "points"),
     (HEAD + "points: [[1 MHz, -9 dB], [1 MHz, -1 dB], [2 MHz, -9 dB]]", "points"),
     (HEAD + "points: [[1 MHz, -9 dB], [2 MHz, -1 dBm], [3 MHz, -9 dB]]", "points"),
     (HEAD + "points: [[-9 dB, 1 MHz], [-1 dB, 2 MHz], [-9 dB, 3 MHz]]", "points"),

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import date
 
 from logbook.hardware import Parameter
@@ -40,6 +40,10 @@ class Bench:
     def part(self, name: str) -> PathPart | None:
         """The part of the path with this name."""
         return next((part for part in self.path if part.name == name), None)
+
+    def behind_a_detector(self) -> Bench:
+        """The bench where a detector stands in the place of its instrument, whose errors and noise do not enter then."""
+        return replace(self, accuracy=None, linearity_u=None, floor_dbm_per_hz=None, max_input_dbm=None)
 
     def overdue(self, on: date) -> bool:
         """Whether a reading on that day stands after the calibration's due date."""

@@ -95,6 +95,8 @@ def measured(
     """A number as it was read, as a result on equal terms; None with a fault when something would not bear it."""
     session, bench, values = setting.session, setting.bench, setting.values
     known = known_quantity(quantity)
+    if bench is not None and "through_detector" in values and known is not None and known.dimension == "level":
+        bench = bench.behind_a_detector()
     read = _in_base(value, known, setting, place)
     if read is None:
         return None

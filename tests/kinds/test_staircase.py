@@ -140,6 +140,24 @@ def test_level_through_a_detector_by_the_uncertainties_library() -> None:
     assert (read.basis, read.unit, read.read_as) == ("measured", "dBm", "1.100(5) V through detector log")
 
 
+def test_the_detector_stands_in_the_place_of_the_benchs_instrument() -> None:
+    """What the analyser gets wrong (±1.5 dB), its noise and what it bears do not enter; the pad ahead does."""
+    bench = block(
+        "bench",
+        "bench: shack\nreads: {accuracy: ± 1.5 dB, linearity: ± 0.3 dB, floor: -90 dBm/Hz, max_input: -60 dBm}\n"
+        "path:\n  - {name: pad, loss: 10 ± 0.2 dB}",
+    )
+    text = "bench: shack\nthrough: [pad]\nrbw: 10 kHz\naveraging: power"
+    found = book_of(
+        entry("01-01", bench, CHAIN, staircase(LEVELS, VOLTS), through("1.10 V"), revision="A"),
+        entry("01-02", through("1.10 V", text)),
+    )
+    plain, behind = (r for r in found.results if r.quantity == "output_level")
+    assert behind.value == pytest.approx(plain.value + 10.0)
+    assert behind.u == pytest.approx(math.hypot(plain.u, 0.2 / math.sqrt(3)))
+    assert behind.bound == ""
+
+
 def two(first: str, second: str, *between: str) -> Book:
     """A reading on A and one on B; whatever stands between comes in B's entry, ahead of its reading."""
     return book_of(

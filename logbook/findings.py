@@ -6,7 +6,7 @@ from collections.abc import Callable
 from dataclasses import dataclass, field
 from functools import cached_property
 
-from logbook.model import Parts, Result, Source
+from logbook.model import PREDICTED, Parts, Result, Source
 from logbook.prediction import Terms
 from logbook.problems import Place
 from logbook.quantities import Better
@@ -225,13 +225,15 @@ class TodoWords:
 class Findings:
     """All that comparing found, in the order of the entries; what only pages and files show is made when asked for."""
 
-    deltas: list[Delta] = field(default_factory=list)
+    read: dict[str, list[Delta]] = field(default_factory=dict)
     targets: list[TargetVerdict] = field(default_factory=list)
     regressions: list[Regression] = field(default_factory=list)
     todo: list[Todo] = field(default_factory=list)
     parts: list[Part] = field(default_factory=list)
+    make_predicted: Callable[[str], list[Delta]] = lambda label: []
     make_agreement: Callable[[], list[Agreement]] = list
     make_spreads: Callable[[], list[Spread]] = list
+    _predicted: dict[str, list[Delta]] = field(default_factory=dict)
 
     @cached_property
     def agreement(self) -> list[Agreement]:
@@ -243,9 +245,24 @@ class Findings:
         """Repeated readings that differ by more than their doubt."""
         return self.make_spreads()
 
-    def deltas_to(self, revision: str, *, basis: str | None = None) -> list[Delta]:
+    @cached_property
+    def deltas(self) -> list[Delta]:
+        """All deltas by revision: the totals of its chains, then the results of its blocks."""
+        return [delta for label in self.read for delta in self.deltas_to(label)]
+
+    def deltas_to(self, revision: str) -> list[Delta]:
         """The deltas of a revision against its ancestors."""
-        return [d for d in self.deltas if d.to == revision and (basis is None or d.basis == basis)]
+        return [*self.predicted_to(revision), *self.read.get(revision, ())]
+
+    def predicted_to(self, revision: str) -> list[Delta]:
+        """The deltas of the totals of a revision's chains."""
+        if revision not in self._predicted:
+            self._predicted[revision] = self.make_predicted(revision)
+        return self._predicted[revision]
+
+    def read_to(self, revision: str) -> list[Delta]:
+        """The deltas of what was read on a revision, or derived from it."""
+        return [d for d in self.read.get(revision, ()) if d.basis != PREDICTED]
 
     def regressions_of(self, revision: str) -> list[Regression]:
         """The regressions of a revision."""

@@ -111,6 +111,6 @@ def make_book(
     calculated = calculate(history, kinds, problems, reader, predicted)
     rules = Rules(settings.coverage, settings.matters)
     check_chains(history.revisions.values(), predicted, problems)
-    findings = compare_all(history, calculated.results, predicted, rules, problems)
+    findings = compare_all(history, calculated.of_blocks, predicted, rules, problems)
     drop_consequences(files.values(), problems)
     return Book(settings, files, history, calculated, findings, problems, predicted)

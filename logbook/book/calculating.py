@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
+from functools import cached_property
 
 from logbook.book.history import BlockKey, History, Reader
 from logbook.hardware import Chain
@@ -16,13 +17,26 @@ from logbook.quantity import Quantity
 from logbook.revision import Revision
 
 
-@dataclass(slots=True)
+@dataclass
 class Calculated:
-    """The outcomes of all blocks, and all results in the order of the entries."""
+    """The outcomes of all blocks, and their results in the order of the entries."""
 
+    predict: Callable[[Chain, Terms], Prediction]
     outcomes: dict[BlockKey, Outcome] = field(default_factory=dict)
-    results: list[Result] = field(default_factory=list)
+    of_blocks: list[Result] = field(default_factory=list)
     earlier: dict[tuple[str, str], list[Earlier]] = field(default_factory=dict)
+    made: list[tuple[int, Revision]] = field(default_factory=list)
+
+    @cached_property
+    def results(self) -> list[Result]:
+        """The results of the blocks, and ahead of them the totals of each revision where it is made."""
+        found: list[Result] = []
+        start = 0
+        for count, revision in self.made:
+            found += self.of_blocks[start:count]
+            found += predicted_results(revision, self.predict)
+            start = count
+        return found + self.of_blocks[start:]
 
 
 def calculate(
@@ -33,11 +47,11 @@ def calculate(
     predict: Callable[[Chain, Terms], Prediction],
 ) -> Calculated:
     """Calculate every block of every entry, in their order; predicted totals stand where their revision is made."""
-    done = Calculated()
+    done = Calculated(predict)
     for entry in history.entries:
         revision = history.of(entry)
         if revision is not None and revision.entry == entry.path:
-            done.results += predicted_results(revision, predict)
+            done.made.append((len(done.of_blocks), revision))
         for block in entry.blocks:
             kind = kinds.get(block.kind)
             if kind is None or (kind.needs_revision and revision is None):
@@ -56,7 +70,7 @@ def calculate(
             )
             outcome = _outcome(block, kind, session, history)
             done.outcomes[(entry.path, block.number)] = outcome
-            done.results += outcome.results
+            done.of_blocks += outcome.results
             _remember(done, entry, block, kind, session.label, outcome)
     return done
 

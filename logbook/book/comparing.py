@@ -37,13 +37,14 @@ def compare_all(
         todo=_todo(history, problems),
         parts=history.parts,
         make_agreement=lambda: _agreement(measured, history, predict, rules),
+        make_predicted=lambda label: _predicted(history, label, predict, rules),
         make_spreads=lambda: [spread for label in history.revisions for spread in spreads(own[label], rules)],
     )
-    for revision in history.revisions.values():
-        findings.deltas += deltas_of(revision, history, own, planned, predict, rules)
+    for label, revision in history.revisions.items():
+        findings.read[label] = _read(revision, history, own, planned, rules)
     findings.targets = _targets(history, own, planned, predict, rules)
     findings.regressions = regressions(
-        findings.deltas,
+        [delta for found in findings.read.values() for delta in found],
         {label: findings.targets_of(label) for label in history.revisions},
         {label: [a.label for a in history.ancestors(label)] for label, r in history.revisions.items() if r.built},
         history.accepts,
@@ -76,26 +77,21 @@ def _chain_of(result: Result, history: History) -> Chain | None:
     return None if revision is None else revision.chains.get(result.chain)
 
 
-def deltas_of(
-    revision: Revision,
-    history: History,
-    own: Results,
-    planned: Results,
-    predict: Predict,
-    rules: Rules,
-) -> list[Delta]:
-    """The predicted and measured deltas of a revision against its parent and ancestors."""
+def _predicted(history: History, label: str, predict: Predict, rules: Rules) -> list[Delta]:
+    """What the totals of a revision's chains are predicted to change against its parent."""
+    ancestors = history.ancestors(label)
+    return chain_deltas(history.revisions[label], ancestors[0], predict, rules) if ancestors else []
+
+
+def _read(revision: Revision, history: History, own: Results, planned: Results, rules: Rules) -> list[Delta]:
+    """What the results of a revision's blocks changed against its ancestors'."""
     ancestors = history.ancestors(revision.label)
     if not ancestors:
         return []
-    parent = ancestors[0]
-    found = chain_deltas(revision, parent, predict, rules)
     lines = [(each.label, own[each.label]) for each in ancestors]
     if revision.state == PLANNED:
-        found += measured_deltas(planned[revision.label], lines, revision.label, rules, ())
-    else:
-        found += measured_deltas(own[revision.label], lines, revision.label, rules, set(revision.made))
-    return found
+        return measured_deltas(planned[revision.label], lines, revision.label, rules, ())
+    return measured_deltas(own[revision.label], lines, revision.label, rules, set(revision.made))
 
 
 def _targets(history: History, own: Results, planned: Results, predict: Predict, rules: Rules) -> list[TargetVerdict]:

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from logbook.book import Book
-from logbook.model import PREDICTED
 from logbook.pieces import Heading, Note, Piece, Text
 from logbook.problems import CAUTION
 from logbook.revision import Revision
@@ -54,7 +53,7 @@ def _targets(book: Book, latest: Revision) -> list[Piece]:
 
 
 def _last_change(book: Book, latest: Revision) -> list[Piece]:
-    deltas = [d for d in book.findings.deltas_to(latest.label) if d.basis != PREDICTED]
+    deltas = book.findings.read_to(latest.label)
     if not deltas:
         return []
     title = f"What {latest.label} did, measured"

@@ -7,7 +7,6 @@ from dataclasses import dataclass
 
 from logbook.compare.verdicts import BETTER
 from logbook.findings import Delta, Findings, Part
-from logbook.model import PREDICTED
 from logbook.quantities import DECIBELS
 
 
@@ -45,8 +44,8 @@ def prices_of_improvement(findings: Findings, revision: str) -> list[PriceOfImpr
     """
     spent = spent_on(findings, revision)
     found = []
-    for delta in findings.deltas_to(revision):
-        if delta.basis == PREDICTED or delta.verdict != BETTER or delta.unit not in DECIBELS or not delta.delta:
+    for delta in findings.read_to(revision):
+        if delta.verdict != BETTER or delta.unit not in DECIBELS or not delta.delta:
             continue
         costs = cost_by_currency(part for part in spent if part.chain in ("", delta.chain))
         found += [PriceOfImprovement(delta, cost, currency) for currency, cost in costs.items() if cost > 0]

@@ -6,7 +6,7 @@ from math import isnan
 
 from logbook.book import Book
 from logbook.findings import Target, TargetVerdict
-from logbook.model import PREDICTED, TRIAL
+from logbook.model import TRIAL
 from logbook.pages.links import entry_link
 from logbook.pieces import Card, Cards, Heading, Items, Line, Link, Muted, Note, Piece, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_value
@@ -74,10 +74,10 @@ def _unaccepted(book: Book) -> list[Piece]:
 
 
 def _last_change(book: Book, latest: Revision) -> list[Piece]:
-    deltas = [d for d in book.findings.deltas_to(latest.label) if d.basis != PREDICTED]
+    deltas = book.findings.read_to(latest.label)
     kind = "measured"
     if not deltas:
-        deltas = [d for d in book.findings.deltas_to(latest.label, basis=PREDICTED) if d.verdict != "same"]
+        deltas = [d for d in book.findings.deltas_to(latest.label) if d.verdict != "same"]
         kind = "predicted, nothing is measured yet"
     if not deltas:
         return []

@@ -37,7 +37,7 @@ def results_pieces(outcome: Outcome, view: View) -> list[Piece]:
 
 def delta_of(result: Result, view: View) -> Delta | None:
     """The delta that ends in this very result, if it is the one that was compared."""
-    for delta in view.findings.deltas_to(result.revision):
+    for delta in view.findings.read.get(result.revision, ()):
         if delta.after_result is result:
             return delta
     return None
@@ -73,7 +73,7 @@ def _stands_back(result: Result, view: View) -> Line:
     """A word for a reading that is not the one compared: another of this revision with the same key is."""
     if isnan(result.value) or result.basis == PREDICTED:
         return ""
-    other = any(d.key == result.key and d.after_result for d in view.findings.deltas_to(result.revision))
+    other = any(d.key == result.key and d.after_result for d in view.findings.read.get(result.revision, ()))
     return Muted("another reading of this revision is compared") if other else ""
 
 

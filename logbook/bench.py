@@ -42,7 +42,7 @@ class Bench:
         return next((part for part in self.path if part.name == name), None)
 
     def behind_a_detector(self) -> Bench:
-        """The bench where a detector stands in the place of its instrument, whose errors and noise do not enter then."""
+        """The bench with a detector in its instrument's place: its errors, noise and limits do not enter then."""
         return replace(self, accuracy=None, linearity_u=None, floor_dbm_per_hz=None, max_input_dbm=None)
 
     def overdue(self, on: date) -> bool:

@@ -17,7 +17,7 @@ from logbook.quantity_display import show_frequency, show_value
 from logbook.showing.readings import show_results
 from logbook.sweep import Sweep
 
-# Points drawn at most, and as many as may stand in the table beneath.
+# Points of one sweep that are drawn at most, and as many as may stand in the table beneath.
 _DRAWN = 1200
 _IN_TABLE = 24
 _MARKS = 12
@@ -78,12 +78,15 @@ def _ancestors(label: str, view: View) -> set[str]:
 
 def _drawn(sweep: Sweep, earlier: tuple[Earlier, Sweep] | None) -> _Drawn:
     kept = _thinned(sweep.y)
-    x, now = sweep.x[kept], sweep.y[kept]
     before, label = None, ""
     if earlier is not None:
         known = earlier[1]
-        before = np.interp(x, known.x, known.y, left=np.nan, right=np.nan)
+        there = np.interp(sweep.x, known.x, known.y, left=np.nan, right=np.nan)
+        # A line that has gone since is as much worth drawing as one that has come.
+        kept = np.union1d(kept, _thinned(there))
+        before = there[kept]
         label = f"{earlier[0].revision}, {earlier[0].entry.date}"
+    x, now = sweep.x[kept], sweep.y[kept]
     scale, unit = _scale(float(sweep.x[-1]))
     return _Drawn(x, x / scale, unit, now, before, label)
 

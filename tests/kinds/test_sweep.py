@@ -14,6 +14,7 @@ from workshop import block, chain, delta, entry
 from logbook.book import Book, SourceFile, make_book
 from logbook.model import Result
 from logbook.pages import block_pieces
+from logbook.pieces import Chart, Download, Picture
 from logbook.terminal import render
 
 BENCH = block(
@@ -365,6 +366,24 @@ def test_lines_keep_their_keys_between_sweeps(tmp_path: Path, at: str) -> None:
     assert (by["spur_level72"].verdict, by["spur_level61"].verdict) == ("worse", "same")
     # Accuracy and pad are the same in both and cancel; linearity of each does not.
     assert by["spur_level61"].u == pytest.approx(math.sqrt(2) * 0.3 / math.sqrt(3))
+
+
+def test_a_line_that_has_gone_is_still_drawn(tmp_path: Path) -> None:
+    """One point in twelve thousand of the sweep before: it stands in what is drawn and in the file of it."""
+    write_lines(tmp_path / "a.csv", {50e6: -4.0, 72e6: -50.0})
+    write_lines(tmp_path / "b.csv", {50e6: -4.0})
+    text = "name: tx\nof: spectrum\nat: 50 MHz\nfile: {}"
+    found = two_revisions(tmp_path, text.format("a.csv"), text.format("b.csv"))
+    last = found.entries[-1]
+    pieces = block_pieces(found, last, last.blocks[0])
+    (file,) = [each for each in pieces if isinstance(each, Download)]
+    rows = [[float(cell) for cell in line.split(",")] for line in file.content.splitlines()[1:]]
+    assert len(rows) < 3000
+    assert [row for row in rows if row[0] == 72e6] == [[72e6, -100.0, -50.0, -50.0]]
+    (picture,) = [each for each in pieces if isinstance(each, Picture)]
+    assert isinstance(picture.drawing, Chart)
+    before = next(each for each in picture.drawing.series if each.role == "before")
+    assert max(y for x, y in zip(before.x, before.y, strict=True) if x > 60) == -50.0
 
 
 POINTS = "points: [[1 MHz, -9 dB], [2 MHz, -1 dB], [3 MHz, -9 dB], [4 MHz, -30 dB]]"

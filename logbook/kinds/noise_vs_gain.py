@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import replace
 from math import isnan, nan, sqrt
 
@@ -21,6 +22,7 @@ from logbook.physics.noise_split import (
     split_noise,
     told_apart,
 )
+from logbook.physics.propagation import propagate
 from logbook.problems import did_you_mean
 from logbook.quantity_display import show_value
 from logbook.showing.noise_vs_gain import Split, show_noise_vs_gain
@@ -55,6 +57,9 @@ FIELDS = (
     Field("note", text()),
 )
 
+# What is left of a cancelled part by rounding, dB.
+_NOTHING_DB = 1e-9
+
 EXAMPLE = """\
 bench: shack
 at: 50.1 MHz
@@ -85,10 +90,14 @@ def _one(values: Values, session: Session) -> Split | None:
     noise = np.array([each.value for each in readings])
     own = [_fresh_u(each) for each in readings]
     u = np.array([nan if each is None else each for each in own])
-    split = split_noise(settings, noise, None if np.isnan(u).any() else u)
+    stated = None if np.isnan(u).any() else u
+    split = split_noise(settings, noise, stated)
     why = _why_not(split, readings, settings)
     apart = not why
-    results = _results(split, readings, values, setting) if apart else _not_known(why, readings, values, setting)
+    if why:
+        results = _not_known(why, readings, values, setting)
+    else:
+        results = _results(split, _shared(settings, noise, stated, readings), readings, values, setting)
     return Split(tuple(map(float, settings)), tuple(readings), split, apart, values.get("control", ""), results)
 
 
@@ -156,31 +165,52 @@ def _fresh_u(result: Result) -> float | None:
     return sqrt(sum(part * part for part in own)) if own else None
 
 
-def _common(readings: list[Result]) -> dict[Source, float]:
-    """The doubt that all readings share moves both parts of the noise alike, by its mean over the readings."""
-    found: dict[Source, float] = {}
-    for result in readings:
+def _shared(
+    settings: np.ndarray, noise: np.ndarray, u: np.ndarray | None, readings: list[Result]
+) -> list[dict[Source, float]]:
+    """What the doubt that readings share does to each of the three results: all are split again, moved by it.
+
+    What moves all readings alike leaves the equal setting; what a detector's slope is wrong does not.
+    """
+    moved: dict[Source, np.ndarray] = {}
+    for number, result in enumerate(readings):
         for source, part in (result.parts or {}).items():
             if source.sort != "fresh":
-                found[source] = found.get(source, 0.0) + part / len(readings)
+                moved.setdefault(source, np.zeros(len(readings)))[number] = part
+
+    def numbers(given: Mapping[Source, float]) -> tuple[float, float, float]:
+        shift = sum((by * moved[source] for source, by in given.items()), np.zeros(len(readings)))
+        split = split_noise(settings, noise + shift, u)
+        return noise_ahead_dbm(split), noise_after_dbm(split), equal_setting(split)[0]
+
+    inputs: dict[Source, tuple[float, float | None]] = dict.fromkeys(moved, (0.0, 1.0))
+    found = []
+    for which in range(3):
+        _, parts = propagate(lambda given, i=which: numbers(given)[i], inputs)  # type: ignore[misc]
+        found.append({source: part for source, part in parts.items() if abs(part) > _NOTHING_DB})
     return found
 
 
-def _results(split: NoiseSplit, readings: list[Result], values: Values, setting: Setting) -> tuple[Result, ...]:
+def _results(
+    split: NoiseSplit, shared: list[dict[Source, float]], readings: list[Result], values: Values, setting: Setting
+) -> tuple[Result, ...]:
     """Noise from ahead (as it is at 0 dB) and from after the control, and the setting at which they are equal."""
-    common, place, at = _common(readings), values.place("noise"), readings[0].at_hz
+    place, at = values.place("noise"), readings[0].at_hz
     u_ahead, u_after = part_uncertainties_db(split)
     level, u_equal = equal_setting(split)
     notes = _notes(readings, setting)
     found = []
-    for quantity_, value, u in (
-        ("noise_ahead", noise_ahead_dbm(split), u_ahead),
-        ("noise_after", noise_after_dbm(split), u_after),
+    for (quantity_, value, unit, u), common in zip(
+        (
+            ("noise_ahead", noise_ahead_dbm(split), "dBm", u_ahead),
+            ("noise_after", noise_after_dbm(split), "dBm", u_after),
+            ("equal_setting", level, "dB", u_equal),
+        ),
+        shared,
+        strict=True,
     ):
         parts = {**common, _own(values, quantity_): u}
-        found.append(derived(quantity_, value, "dBm", parts, setting, place, at_hz=at, notes=notes))
-    parts = {_own(values, "equal_setting"): u_equal}
-    found.append(derived("equal_setting", level, "dB", parts, setting, place, at_hz=at, notes=notes))
+        found.append(derived(quantity_, value, unit, parts, setting, place, at_hz=at, notes=notes))
     if readings[0].conditions.averaging is None:
         return tuple(found)
     # What was read is a power average already.

@@ -171,7 +171,7 @@ class Regression:
 
 @dataclass(frozen=True, slots=True)
 class Accept:
-    """A known regression of a revision that is accepted, with the reason."""
+    """A known regression of a revision that is accepted, with the reason; a `name` of None stands for every name."""
 
     quantity: str
     chain: str | None
@@ -180,6 +180,7 @@ class Accept:
     entry: str
     revision: str
     place: Place
+    name: str | None = None
 
 
 @dataclass(frozen=True, slots=True)

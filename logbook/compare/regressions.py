@@ -81,7 +81,7 @@ def _last_measured(
 
 def _covers(accept: Accept, found: _Found) -> bool:
     same = accept.revision == found.to and accept.quantity == found.quantity
-    same = same and accept.chain in (None, found.chain)
+    same = same and accept.chain in (None, found.chain) and accept.name in (None, found.key.partition("#")[2])
     return same and (accept.at_hz is None or accept.at_hz == found.at_hz)
 
 

@@ -12,6 +12,7 @@ from logbook.quantity_display import show_frequency
 FIELDS = (
     Field("chain", text()),
     Field("quantity", text(), required=True, help="The quantity that got worse, such as 'quantity: iip3'."),
+    Field("name", text()),
     Field("at", quantity("frequency", positive=True)),
     Field("why", text(), required=True, help="The reason; the site shows it beside the regression."),
 )
@@ -32,6 +33,7 @@ def declare(values: Values, session: Session) -> Accept | None:
         chain=values.get("chain"),
         at_hz=values["at"].value if "at" in values else None,
         why=values["why"],
+        name=values.get("name"),
         entry=session.entry.path,
         revision=session.label,
         place=values.place("quantity"),
@@ -44,7 +46,8 @@ def show(block: Block, outcome: Outcome, view: View) -> list[Piece]:
     for accept in outcome.data or ():
         if isinstance(accept, Accept):
             at = f" at {show_frequency(accept.at_hz)}" if accept.at_hz is not None else ""
-            words = f"{accept.quantity.replace('_', ' ')}{at}"
+            named = f" “{accept.name}”" if accept.name else ""
+            words = f"{accept.quantity.replace('_', ' ')}{named}{at}"
             lines.append((Strong(words), f" got worse on revision {accept.revision} and is accepted: {accept.why}"))
     if len(lines) == 1:
         return [Note(lines[0])]

@@ -107,13 +107,34 @@ def test_what_belongs_to_the_part_is_the_same_error_on_both_revisions() -> None:
 
 
 def test_targets_regressions_and_their_acceptance() -> None:
-    text = "name: pa\npower: 6.0 W\njunction_case: 3.2(1) K/W\ncase: {}(1) degC\nmaximum: 175 degC"
+    """Of two parts that both got hotter only the one that is named is accepted."""
+    parts = "- {{name: {}, power: 6.0 W, junction_case: 3.2(1) K/W, case: {}(1) degC, maximum: 175 degC}}\n"
     target = block("target", "quantity: junction_margin\nname: pa\nlimit: '>= 90 K'")
-    found = two(text.format("61"), text.format("80"), target)
+    accept = block(
+        "accept", "- {quantity: junction, name: pa, why: summer}\n- {quantity: junction_margin, why: summer}"
+    )
+    step = block("change", "chain: tx\nsteps:\n  - set: pa\n    to: {gain: 19 dB}")
+    before, after = (heat(parts.format("pa", case) + parts.format("reg", case)) for case in (61, 80))
+    found = book_of(
+        entry("01-01", CHAIN, target, before, revision="A"),
+        entry("02-01", step, after, accept, revision="B"),
+    )
     assert {t.revision: t.verdict for t in found.findings.targets} == {"A": "meets", "B": "misses"}
-    keys = {r.key for r in found.findings.regressions}
-    assert {"tx/junction#pa", "tx/junction_margin#pa"} <= keys
-    assert not any(r.accepted for r in found.findings.regressions)
+    accepted = {(r.key, r.kind): r.accepted for r in found.findings.regressions}
+    assert accepted == {
+        ("tx/junction#pa", "delta"): True,
+        ("tx/junction#reg", "delta"): False,
+        ("tx/junction_margin#pa", "delta"): True,
+        ("tx/junction_margin#reg", "delta"): True,
+        ("tx/junction_margin#pa", "target"): True,
+        ("tx/case_temperature#pa", "delta"): False,
+        ("tx/case_temperature#reg", "delta"): False,
+    }
+    wrong = accept.replace("name: pa", "name: paa")
+    missed = book_of(
+        entry("01-01", CHAIN, before, revision="A"), entry("02-01", step, after, wrong, revision="B"), sound=False
+    )
+    assert [p.code for p in missed.problems] == ["accepts-nothing"]
 
 
 PLANNED = "name: pa\npower: 6 W\njunction_case: 3 K/W\nsink_ambient: {} K/W\nambient: 25 degC\nmaximum: 175 degC"

@@ -242,6 +242,20 @@ class Findings:
         return self.make_agreement()
 
     @cached_property
+    def compared_in(self) -> dict[str, set[str]]:
+        """The keys of the results that were compared, by the entry that holds the later side."""
+        found: dict[str, set[str]] = {}
+        for delta in (d for deltas in self.read.values() for d in deltas):
+            if delta.after_result is not None:
+                found.setdefault(delta.after_result.entry, set()).add(delta.key)
+        return found
+
+    @cached_property
+    def agreement_by_result(self) -> dict[int, Agreement]:
+        """The same by the identity of the measured result."""
+        return {id(found.result): found for found in self.agreement}
+
+    @cached_property
     def spreads(self) -> list[Spread]:
         """Repeated readings that differ by more than their doubt."""
         return self.make_spreads()

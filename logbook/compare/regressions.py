@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
-from itertools import combinations
+
+import numpy as np
 
 from logbook.compare.deltas import u_of_difference
 from logbook.compare.equal import in_rbw, why_not_comparable
@@ -106,14 +107,38 @@ def spreads(results: Mapping[str, Sequence[Result]], rules: Rules) -> list[Sprea
 
 
 def _worst_pair(repeated: Sequence[Result], rules: Rules) -> Spread | None:
-    """The two readings whose difference is largest against its doubt; None where all agree within theirs."""
-    found: list[Spread] = []
-    for first, second in combinations(repeated, 2):
+    """The two readings whose difference is largest against its doubt; None where all agree within theirs.
+
+    What is fresh in two readings never cancels, so no difference is larger against its doubt than against that part:
+    pairs are looked at in that order, and once one is worse than the next can be, the rest need no look.
+    """
+    found: Spread | None = None
+    worst = rules.coverage
+    for most, i, j in _by_fresh_doubt(repeated, rules):
+        if most <= worst:
+            break
+        first, second = repeated[i], repeated[j]
         before = in_rbw(first, second.conditions.rbw_hz)
         change = second.value - before
         if abs(change) < rules.smallest(second.quantity, second.unit, before) or first.bound or second.bound:
             continue
         u = u_of_difference(first.parts, second.parts)
-        if u and abs(change) > rules.coverage * u and not why_not_comparable(first, second):
-            found.append(Spread(second.key, second.revision, first, second, change, u, second.unit))
-    return max(found, key=lambda spread: abs(spread.difference) / spread.u, default=None)
+        if u and abs(change) > worst * u and not why_not_comparable(first, second):
+            worst = abs(change) / u
+            found = Spread(second.key, second.revision, first, second, change, u, second.unit)
+    return found
+
+
+def _by_fresh_doubt(repeated: Sequence[Result], rules: Rules) -> list[tuple[float, int, int]]:
+    """Pairs that may differ beyond doubt, the largest difference over fresh doubt first: (their ratio, indices)."""
+    rbw = next((r.conditions.rbw_hz for r in repeated if r.conditions.rbw_hz is not None), None)
+    value = np.array([in_rbw(result, rbw) for result in repeated])
+    fresh = np.array([sum(p * p for s, p in (r.parts or {}).items() if s.sort == "fresh") for r in repeated])
+    i, j = np.triu_indices(len(repeated), 1)
+    doubt = np.sqrt(fresh[i] + fresh[j])
+    with np.errstate(divide="ignore", invalid="ignore"):
+        ratio = np.abs(value[j] - value[i]) / doubt
+    # Without fresh doubt the ratio is infinite, and the pair is looked at first; alike to the last digit it is nan.
+    kept = np.flatnonzero(ratio > rules.coverage)
+    order = kept[np.argsort(-ratio[kept], kind="stable")]
+    return [(float(ratio[k]), int(i[k]), int(j[k])) for k in order]

@@ -39,9 +39,7 @@ def head_pieces(book: Book, entry: Entry) -> list[Piece]:
 
 
 def tail_pieces(book: Book, entry: Entry) -> list[Piece]:
-    """What this entry's readings show to have got worse."""
+    """What this entry's readings show to have got worse: where several read the same, the one that was compared."""
     revision = book.history.of(entry)
-    if revision is None:
-        return []
-    own = {result.key for result in book.results if result.entry == entry.path and result.basis != "predicted"}
-    return regression_pieces(book.findings, revision.label, own) if own else []
+    keys = book.findings.compared_in.get(entry.path)
+    return regression_pieces(book.findings, revision.label, keys) if revision is not None and keys else []

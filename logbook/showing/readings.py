@@ -124,8 +124,8 @@ def _corrections(results: list[Result]) -> list[Piece]:
 
 
 def _agreement(results: list[Result], view: View) -> list[Piece]:
-    own = {id(result) for result in results if result.basis != PREDICTED}
-    found = [a for a in view.findings.agreement if id(a.result) in own]
+    known = view.findings.agreement_by_result
+    found = [known[id(result)] for result in results if id(result) in known]
     if not found:
         return []
     pieces: list[Piece] = [agreement_table(found)]

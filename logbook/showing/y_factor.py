@@ -47,8 +47,8 @@ def show_y_factor(block: Block, outcome: Outcome, view: View) -> list[Piece]:
         pieces.append(results_table(list(outcome.results), view))
     for each in found:
         pieces += _one(each)
-    by_result = {id(each.result) for each in found}
-    agreements = [a for a in view.findings.agreement if id(a.result) in by_result]
+    known = view.findings.agreement_by_result
+    agreements = [known[id(each.result)] for each in found if id(each.result) in known]
     if agreements:
         pieces.append(agreement_table(agreements))
     return pieces

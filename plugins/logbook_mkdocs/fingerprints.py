@@ -9,7 +9,7 @@ from hashlib import sha256
 import numpy as np
 
 from logbook.book import Book, SourceFile
-from logbook.findings import Delta
+from logbook.findings import Delta, Regression, Todo
 from logbook.model import Entry, Parts, Result
 from logbook.pages import block_pieces, revision_path
 from logbook.pieces import Piece
@@ -19,6 +19,8 @@ from logbook.revision import Revision
 # long. Any other kind is marked by its very pieces, which hold what it took from files and from other entries.
 _MARKED = frozenset({"chain", "change", "bench", "reading", "target", "accept", "todo"})
 
+# Blocks that show what belongs to the whole revision; a page without them shows less of it.
+_OF_REVISION = frozenset({"chain", "change", "target", "accept"})
 
 Pages = Mapping[str, Callable[[], list[Piece]]]
 
@@ -75,6 +77,13 @@ class _Marks:
     def __init__(self, book: Book) -> None:
         self.book = book
         self._chains: dict[int, str] = {}
+        self._todo: dict[str, list[Todo]] = {}
+        for item in book.findings.todo:
+            for path in dict.fromkeys((item.opened, item.closed or "")):
+                self._todo.setdefault(path, []).append(item)
+        self._worse: dict[str, list[Regression]] = {}
+        for regression in book.findings.regressions:
+            self._worse.setdefault(regression.to, []).append(regression)
         self._revisions: dict[int, str] = {}
         self._results: dict[str, list[str]] = {}
         self._agreement: dict[str, list[str]] = {}
@@ -132,8 +141,19 @@ class _Marks:
         """All that an entry's page says besides its own text."""
         book = self.book
         shown = [repr(block_pieces(book, entry, block)) for block in entry.blocks if block.kind not in _MARKED]
-        todo = [repr(t) for t in book.findings.todo if entry.path in (t.opened, t.closed)]
+        todo = [repr(each) for each in self._todo.get(entry.path, ())]
         problems = [str(p) for p in book.problems if p.place.file == entry.path] if len(book.problems) else []
-        return _digest(
-            self.of_revision(book.history.of(entry)), *self._results.get(entry.path, ()), *shown, *todo, *problems
-        )
+        revision = book.history.of(entry)
+        whole = any(block.kind in _OF_REVISION for block in entry.blocks)
+        said = self.of_revision(revision) if whole else self._brief(revision, entry)
+        return _digest(said, *self._results.get(entry.path, ()), *shown, *todo, *problems)
+
+    def _brief(self, revision: Revision | None, entry: Entry) -> str:
+        """What an entry that only reads says of its revision: the line under its title, and what has got worse."""
+        if revision is None:
+            return ""
+        keys = self.book.findings.compared_in.get(entry.path, set())
+        worse = [r for r in self._worse.get(revision.label, ()) if r.key in keys]
+        said = [f"{r.key} {r.kind} {r.delta!r} {r.from_} {r.accepted} {r.why}" for r in worse]
+        head = f"{revision.label} {revision.comes_from} {revision.state} {revision.entry} {self.book.settings}"
+        return _digest(head, *said)

@@ -6,8 +6,9 @@ import re
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
 from datetime import date
+from pathlib import Path
 
-from logbook.book.sources import SourceFile
+from logbook.book.sources import SourceFile, source_paths
 from logbook.entry_text import EntryText, Fence, decode, scan
 from logbook.fields import Asked, read_mapping
 from logbook.kind import Kind
@@ -55,7 +56,20 @@ class Remembering:
     """Reads files as `read_file` does, but one whose bytes are as before only once: for books made again and again."""
 
     def __init__(self) -> None:
+        self._sources: dict[str, tuple[tuple[int, int], SourceFile]] = {}
         self._known: dict[str, tuple[SourceFile, ReadFile, tuple[Problem, ...]]] = {}
+
+    def find(self, folder: Path) -> list[SourceFile]:
+        """The sources beneath a folder; a file whose time and size are as before is not opened again."""
+        found: dict[str, tuple[tuple[int, int], SourceFile]] = {}
+        for path in source_paths(folder):
+            known, stat = self._sources.get(path), (folder / path).stat()
+            state = (stat.st_mtime_ns, stat.st_size)
+            if known is None or known[0] != state:
+                known = (state, SourceFile(path, (folder / path).read_bytes()))
+            found[path] = known
+        self._sources = found
+        return [source for _, source in found.values()]
 
     def read(self, source: SourceFile, kinds: Mapping[str, Kind], problems: Problems) -> ReadFile:
         """Read one file; the kinds must be the same every time."""

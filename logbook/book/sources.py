@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 from dataclasses import dataclass
 from pathlib import Path, PurePosixPath
 
@@ -19,12 +20,17 @@ class SourceFile:
 
 def find_sources(folder: Path) -> list[SourceFile]:
     """All Markdown files beneath a folder, hidden ones left out, sorted by path."""
-    found: list[SourceFile] = []
-    for path in sorted(folder.rglob("*.md")):
-        inside = path.relative_to(folder)
-        if not any(part.startswith(".") for part in inside.parts) and path.is_file():
-            found.append(SourceFile(inside.as_posix(), path.read_bytes()))
-    return found
+    return [SourceFile(path, (folder / path).read_bytes()) for path in source_paths(folder)]
+
+
+def source_paths(folder: Path) -> list[str]:
+    """Where they are within the folder, with forward slashes."""
+    found: list[PurePosixPath] = []
+    for here, folders, files in os.walk(folder):
+        folders[:] = [name for name in folders if not name.startswith(".")]
+        inside = PurePosixPath(*Path(here).relative_to(folder).parts)
+        found += [inside / name for name in files if name.endswith(".md") and not name.startswith(".")]
+    return [str(path) for path in sorted(found)]
 
 
 def file_reader(folder: Path | None, entry: str, problems: Problems) -> ReadFile:

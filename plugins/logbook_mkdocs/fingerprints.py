@@ -10,6 +10,7 @@ import numpy as np
 
 from logbook.book import Book, SourceFile
 from logbook.findings import Delta, Regression, Todo
+from logbook.hardware import Chain
 from logbook.model import Entry, Parts, Result
 from logbook.pages import block_pieces, revision_path
 from logbook.pieces import Piece
@@ -59,9 +60,10 @@ def _of_parts(parts: Parts | None) -> int:
 
 
 def _of_result(result: Result) -> str:
-    read = f"{result.shown!r} {result.corrections} {result.repeats} {result.conditions}"
-    said = f"{result.bound} {result.words} {result.notes}"
-    return f"{result.key} {result.revision} {result.value!r} {_of_parts(result.parts)} {read} {said}"
+    # Python's own hash again; but nan has another one each time, and its text has not.
+    read = (repr(result.value), repr(result.shown), result.corrections, result.repeats, result.conditions)
+    said = (result.read_as, result.bound, result.words, result.notes)
+    return f"{result.key} {result.line} {hash(read)} {hash(said)} {_of_parts(result.parts)}"
 
 
 def _of_delta(delta: Delta) -> str:
@@ -86,22 +88,24 @@ class _Marks:
             self._worse.setdefault(regression.to, []).append(regression)
         self._revisions: dict[int, str] = {}
         self._results: dict[str, list[str]] = {}
-        self._agreement: dict[str, list[str]] = {}
+        self._of_revision: dict[str, list[str]] = {}
+        self._read_on: dict[str, set[tuple[str, str]]] = {}
         self._titles = {entry.path: f"{entry.path} {entry.title} {entry.date}" for entry in book.entries}
         self._collect()
 
     def _collect(self) -> None:
-        """Everything that speaks of an entry's results, by entry."""
-        for result in self.book.results:
-            self._results.setdefault(result.entry, []).append(_of_result(result))
-        for delta in self.book.findings.deltas:
+        """Everything that speaks of an entry's results, by entry, and of a revision's.
+
+        What was predicted for them and how far they spread follows from them and from the chains.
+        """
+        for result in self.book.calculated.of_blocks:
+            mark = _of_result(result)
+            self._results.setdefault(result.entry, []).append(mark)
+            self._of_revision.setdefault(result.revision, []).append(mark)
+            self._read_on.setdefault(result.entry, set()).add((result.revision, result.chain))
+        for delta in (d for deltas in self.book.findings.read.values() for d in deltas):
             if delta.after_result is not None:
                 self._results.setdefault(delta.after_result.entry, []).append(_of_delta(delta))
-        for found in self.book.findings.agreement:
-            said = f"{found.key} {found.measured!r} {found.u_measured!r} {found.predicted!r} {found.u_predicted!r}"
-            said = f"{said} {found.verdict} {found.why} {found.result.conditions}"
-            self._results.setdefault(found.result.entry, []).append(said)
-            self._agreement.setdefault(found.revision, []).append(said)
 
     def of_revision(self, revision: Revision | None) -> str:
         """All that a page says of a revision."""
@@ -117,15 +121,11 @@ class _Marks:
         parent = self.book.revisions.get(revision.comes_from or "")
         chains = [self._chain(chain) for chain in revision.chains.values()]
         chains += [self._chain(chain) for chain in (parent.chains.values() if parent is not None else ())]
-        said = [_of_delta(delta) for delta in findings.deltas_to(label)]
-        said += self._agreement.get(label, ())
+        said = [_of_delta(delta) for delta in findings.read.get(label, ())]
+        said += self._of_revision.get(label, ())
         said += [f"{r.key} {r.accepted} {r.why}" for r in findings.regressions_of(label)]
         for each in (label, revision.comes_from or ""):
             said += [f"{v.target.key} {v.value!r} {v.verdict} {v.target.written}" for v in findings.targets_of(each)]
-        for spread in findings.spreads:
-            if spread.revision == label:
-                said += [_of_result(spread.first), _of_result(spread.second), repr(spread.difference), repr(spread.u)]
-                said += [f"{spread.first.line} {spread.second.line}"]
         entries = [self._titles[path] for path in revision.entries]
         head = f"{label} {revision.comes_from} {revision.state} {revision.date} {revision.made} {revision.alternatives}"
         plan = self.of_revision(revision.planned)
@@ -146,7 +146,15 @@ class _Marks:
         revision = book.history.of(entry)
         whole = any(block.kind in _OF_REVISION for block in entry.blocks)
         said = self.of_revision(revision) if whole else self._brief(revision, entry)
-        return _digest(said, *self._results.get(entry.path, ()), *shown, *todo, *problems)
+        chains = [self._chain(chain) for chain in self._chains_read(entry)]
+        return _digest(said, *self._results.get(entry.path, ()), *chains, *shown, *todo, *problems)
+
+    def _chains_read(self, entry: Entry) -> list[Chain]:
+        """The chains that this entry's results are held against."""
+        revisions = self.book.revisions
+        read_on = sorted(self._read_on.get(entry.path, ()))
+        chains = (revisions[label].chains.get(name) for label, name in read_on if label in revisions)
+        return [chain for chain in chains if chain is not None]
 
     def _brief(self, revision: Revision | None, entry: Entry) -> str:
         """What an entry that only reads says of its revision: the line under its title, and what has got worse."""

@@ -20,7 +20,7 @@ from mkdocs.structure.nav import Navigation
 from mkdocs.structure.pages import Page as SitePage
 from mkdocs.utils.templates import TemplateContext
 
-from logbook.book import Book, Remembering, SourceFile, find_sources, make_book
+from logbook.book import Book, Remembering, SourceFile, make_book
 from logbook.cache import Cache
 from logbook.entry_text import decode
 from logbook.failing import failure_words, failures
@@ -89,7 +89,7 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
     def on_files(self, files: Files, /, *, config: MkDocsConfig) -> Files:
         """Read and compute the whole logbook; add the pages, the data and the assets that it makes."""
         folder = Path(config.docs_dir)
-        sources = {source.path: source for source in find_sources(folder)}
+        sources = {source.path: source for source in self.reading.find(folder)}
         with _no_collecting():
             self.book = make_book(sources.values(), folder, self.options.settings, self.reading.read)
         self.entries = {entry.path: entry for entry in self.book.entries}

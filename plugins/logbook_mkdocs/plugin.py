@@ -68,6 +68,14 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
         self.serving = command == "serve"
         self.dirty = self.serving and dirty
         self.marks = {}
+        if self.dirty:
+            # A whole logbook is kept between the builds: garbage is looked for after each, not many times within it.
+            gc.disable()
+
+    def on_shutdown(self) -> None:
+        """Leave the interpreter as it was found."""
+        if self.dirty:
+            gc.enable()
 
     def on_config(self, config: MkDocsConfig) -> MkDocsConfig:
         """Check the options, and add the stylesheet and the search's shim."""
@@ -198,15 +206,16 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
             words = index.read_text(encoding="utf-8")
             index.with_suffix(".js").write_text(f"var __index = {words}", encoding="utf-8")
         if self.dirty:
-            Thread(target=self._write_results, args=(self.book, Path(config.site_dir) / RESULTS), daemon=True).start()
+            Thread(target=self._tidy_up, args=(self.book, Path(config.site_dir) / RESULTS), daemon=True).start()
         failed = failures(self.book, self.options.fail_on)
         if failed and self.serving:
             log.warning(failure_words(failed))
         elif failed:
             raise PluginError(f"{failure_words(failed)}; the site is in {config.site_dir}")
 
-    def _write_results(self, book: Book, file: Path) -> None:
+    def _tidy_up(self, book: Book, file: Path) -> None:
         """Under `serve --dirty`, while the page is looked at already: of a large logbook it takes a second."""
+        gc.collect()
         data = results_json(book)
         with self.writing:
             if book is self.book:

@@ -14,7 +14,7 @@ _GROUPED = re.compile(r"(?<=[0-9])[\s_'](?=[0-9])")
 _WORD = re.compile(r"\s*[+-]?\.?(nan|inf|infinity)\b", re.IGNORECASE)
 
 
-# Keys that are no nouns: "an at is a frequency" is no sentence.
+# Keys that are no nouns: "an at is a frequency" is no sentence; "a settings is a ratio" is none either.
 _NO_NOUNS = frozenset({"at", "of", "reads", "drives"})
 
 
@@ -39,7 +39,8 @@ def expected(wanted: tuple[str, ...], what: str) -> str:
     """`a gain is a ratio, such as '12 dB'`; without a noun, `here a ratio is expected, such as '12 dB'`."""
     nouns = " or ".join(DIMENSIONS[name].noun for name in wanted)
     example = DIMENSIONS[wanted[0]].example
-    if what in _NO_NOUNS:
+    alike = any(f"{_article(what)} {what}" == DIMENSIONS[name].noun for name in wanted)
+    if what in _NO_NOUNS or alike or re.search(r"[^su]s$", what):
         return f"'{what}' takes {nouns}, such as '{example}'"
     if what:
         return f"{_article(what)} {what} is {nouns}, such as '{example}'"

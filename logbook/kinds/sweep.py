@@ -243,8 +243,8 @@ KIND = Kind(
         "A measured trace, from a CSV of any instrument, a Touchstone file, or `points`. `of` says what it is of. A "
         "`bandpass` can report peak, insertion_loss, centre, bandwidth, shape_factor, ripple, skirt_balance and "
         "rejection; a `response` gain, flatness and peak; a `spectrum` its lines above a level (as shown) and which "
-        "are harmonics of `at`; `noise` density, power in a band, and spot. `reference` names an earlier sweep, or a file, "
-        "to subtract; `x` and `y` choose the columns, and the parameter of a Touchstone file."
+        "are harmonics of `at`; `noise` density, power in a band, and spot. `reference` names an earlier sweep, or a "
+        "file, to subtract; `x` and `y` choose the columns, and the parameter of a Touchstone file."
     ),
     fields=FIELDS,
     example=EXAMPLE,

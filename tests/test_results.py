@@ -130,7 +130,7 @@ def test_every_list_of_the_whole_example_holds_something() -> None:
     ]
 
 
-# The names of LOGBOOK.md section 9, written out once more so that the schema cannot drift from it.
+# The names that others rely on, written out once more so that the schema cannot drift from it.
 CONTRACT = {
     "": "schema title entries revisions results deltas agreement targets regressions todo problems",
     "entries": "path title date revision",

@@ -46,7 +46,7 @@ def test_shipped_rules_say_where_they_come_from_and_what_they_leave_out() -> Non
 @pytest.mark.parametrize(
     ("name", "carrier_hz", "watt", "below"),
     [
-        # 47 CFR 97.307(e), (d) and 95.779(a)(3), as PHYSICS.md prints them.
+        # 47 CFR 97.307(e), (d) and 95.779(a)(3).
         ("us-97-307-e", 50e6, 5.0, 53.0),
         ("us-97-307-e", 50e6, 25.0, 60.0),
         ("us-97-307-e", 50e6, 100.0, 60.0),

@@ -47,7 +47,7 @@ def shown(book: Book) -> str:
 @pytest.mark.parametrize(
     ("rule", "carrier", "power", "below"),
     [
-        # PHYSICS.md: 47 CFR 97.307(e), 97.307(d) for both dates, 95.779(a)(3).
+        # 47 CFR 97.307(e), 97.307(d) for both dates, 95.779(a)(3).
         ("us-97-307-e", "50.1 MHz", "5 W", 53.0),
         ("us-97-307-e", "50.1 MHz", "25 W", 60.0),
         ("us-97-307-e", "50.1 MHz", "100 W", 60.0),

@@ -32,7 +32,7 @@ def shown(book: Book) -> str:
 
 
 def test_power_transistor() -> None:
-    """PHYSICS.md, lecture example: 3.9 W over 3.125 K/W from a case at 76 degC makes 88 degC (88.19)."""
+    """Lecture example, power transistor: 3.9 W over 3.125 K/W from a case at 76 degC makes 88 degC (88.19)."""
     text = "name: pa\npower: 3.9 W\njunction_case: 3.125 degC/W\ncase: 76 degC\nmaximum: 200 degC"
     found = book(heat(text))
     assert result(found, "junction#pa").value == pytest.approx(88, abs=0.5)
@@ -43,7 +43,7 @@ def test_power_transistor() -> None:
 
 @pytest.mark.parametrize("ambient", ["25 degC", "298.15 K"])
 def test_series_regulator(ambient: str) -> None:
-    """PHYSICS.md, closed form: 12 to 5 V at 0.5 A, 5 + 1 + 10 K/W, 25 degC make 3.5 W and 81 degC."""
+    """Closed form: 12 to 5 V at 0.5 A, 5 + 1 + 10 K/W, 25 degC make 3.5 W and 81 degC."""
     text = (
         "name: reg\ninput_voltage: 12 V\noutput_voltage: 5 V\ncurrent: 0.5 A\njunction_case: 5 degC/W\n"
         f"case_sink: 1 degC/W\nsink_ambient: 10 degC/W\nambient: {ambient}\nmaximum: 125 degC"

@@ -39,7 +39,7 @@ def shown(book: Book) -> str:
 @pytest.mark.parametrize(
     ("line", "rms"),
     [
-        # 20 uV in 10 Hz to 100 kHz is 63.2 nV/rtHz (PHYSICS.md, closed form), and the other way round.
+        # 20 uV in 10 Hz to 100 kHz is 63.2 nV/rtHz (closed form), and the other way round.
         ("noise: 20 uV, band: [10 Hz, 100 kHz]", 20e-6),
         ("noise: 63.2 nV/rtHz, band: [10 Hz, 100 kHz]", 63.2e-9 * math.sqrt(99_990)),
         ("noise: 5 uV/V, output: 4 V, band: [10 Hz, 100 kHz]", 20e-6),

@@ -38,7 +38,7 @@ def shown(book: Book) -> str:
 @pytest.mark.parametrize(
     ("text", "printed"),
     [
-        # Closed forms as printed in PHYSICS.md: ENR 15 dB, Y 10 dB; the same with the cold source at 296.15 K.
+        # Closed form: ENR 15 dB, Y 10 dB; the same with the cold source at 296.15 K.
         ("enr: 15 dB\ny: 10 dB", 5.458),
         ("enr: 15 dB\ny: 10 dB\ncold_temperature: 296.15 K", 5.428),
         ("enr: 15 dB\nhot: -50 dBm\ncold: -60 dBm\ncold_temperature: 23 degC", 5.428),
@@ -46,7 +46,7 @@ def shown(book: Book) -> str:
         ("enr: 15 dB\nhot: 10 mV\ncold: 3.16227766 mV", 5.458),
         ("enr: 15 dB\nhot: -3 dB\ncold: -13 dB", 5.458),
         ("enr: 15 dB\nhot: -150 dBm/Hz\ncold: -160 dBm/Hz", 5.458),
-        # PHYSICS.md: NF 10 dB behind 3 dB and 20 dB of gain makes 3.19 dB; here taken off again.
+        # Closed form: NF 10 dB behind 3 dB and 20 dB of gain makes 3.19 dB; here taken off again.
         ("enr: 3.19 dB\ny: 3.0103 dB\nsecond: {nf: 10 dB, gain: 20 dB}", 3.00),
     ],
 )
@@ -55,7 +55,7 @@ def test_published_values(text: str, printed: float) -> None:
 
 
 def test_a_hot_temperature_is_said() -> None:
-    """PHYSICS.md: 1207 K for an ENR of 5 dB; 9461 K for 15 dB, where some print 9171 K."""
+    """Closed form, T0 (1 + ENR): 1207 K for an ENR of 5 dB; 9461 K for 15 dB, where some print 9171 K."""
     assert "Hot is 1207 K" in shown(book(y_factor("enr: 5 dB\ny: 3 dB")))
     assert "Hot is 9461 K" in shown(book(y_factor("enr: 15 dB\ny: 3 dB")))
 

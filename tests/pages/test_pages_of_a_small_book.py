@@ -1,4 +1,4 @@
-"""The pages of a small logbook, read as a person would: what LOGBOOK.md 7 promises stands on them."""
+"""The pages of a small logbook, read as a person would: what each page is for stands on it."""
 
 from __future__ import annotations
 

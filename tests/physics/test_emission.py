@@ -15,7 +15,7 @@ def dbm(watt: float) -> float:
 
 @pytest.mark.parametrize(
     ("watt", "below"),
-    # 47 CFR 97.307(e) by PHYSICS.md: up to 25 W 25 uW and 40 dB, not below 10 uW.
+    # 47 CFR 97.307(e): up to 25 W 25 uW and 40 dB, not below 10 uW.
     [(5.0, 53.0), (25.0, 60.0), (0.2, 40.0), (0.05, 37.0)],
 )
 def test_lowest_of_several_limits_and_not_below_what_is_needed(watt: float, below: float) -> None:

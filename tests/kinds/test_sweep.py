@@ -237,7 +237,7 @@ def test_density_and_power_of_white_noise(tmp_path: Path) -> None:
 
 @pytest.mark.parametrize(("averaging", "below"), [("power", 0.0), ("log", 2.507), ("voltage", 1.049)])
 def test_noise_levels_in_an_rbw_become_density_at_the_unit(tmp_path: Path, averaging: str, below: float) -> None:
-    """Gaussian RBW of 10 kHz is 10.645 kHz of noise; a pad of 10 dB; averages read low by 2.507, 1.049 (closed form)."""
+    """Gaussian RBW of 10 kHz is 10.645 kHz of noise; a pad of 10 dB; averages read 2.507, 1.049 low (closed form)."""
     true = -140.0
     shown = true + 10 * math.log10(10e3 * 1.0645) - 10.0 - below
     points = "\n".join(f"  - [{f} MHz, {shown:.6f} dBm]" for f in range(1, 30))

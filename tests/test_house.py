@@ -21,7 +21,7 @@ FLOORS: tuple[frozenset[str], ...] = tuple(
         "quantity_faults fences yaml_nodes traces",
         "quantity entry_text",
         "model",
-        "fields hardware",
+        "fields hardware budget",
         "bench revision prediction stage_fields spurs detector rules sweep",
         "findings terms emissions",
         "compare plots",

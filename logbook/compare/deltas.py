@@ -5,9 +5,10 @@ from __future__ import annotations
 from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
 from math import isnan, sqrt
 
+from logbook.budget import CANCELLED
 from logbook.compare.equal import in_rbw, why_not_comparable
 from logbook.compare.verdicts import GONE, NEW, NOT_COMPARABLE, NOT_STATED, SAME, Rules, delta_verdict
-from logbook.findings import CANCELLED, Delta
+from logbook.findings import Delta
 from logbook.hardware import Chain
 from logbook.model import PREDICTED, Parts, Result, result_key
 from logbook.prediction import Estimate, Prediction, Terms

@@ -5,7 +5,8 @@ from __future__ import annotations
 from typing import Any
 
 from logbook.book import Book
-from logbook.findings import Agreement, BudgetRow, Delta, Part, Regression, Spread, TargetVerdict, Todo
+from logbook.budget import BudgetRow
+from logbook.findings import Agreement, Delta, Part, Regression, Spread, TargetVerdict, Todo
 from logbook.model import MEASURED, PREDICTED, Result
 from logbook.problems import Problem
 from logbook.results.hardware import revision_data

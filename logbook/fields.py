@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from datetime import date
 from typing import Any
@@ -52,31 +52,38 @@ def read_mapping(node: Node | None, fields: Sequence[Field], asked: Asked) -> Va
     by_name = {f.name: f for f in fields}
     data: dict[str, Any] = {}
     places: dict[str, Place] = {}
-    spoiled = False
-    meant: set[str] = set()
+    spoiled, meant = False, set[str]()
     for key, value in node.pairs:
         if key.text not in by_name:
-            hint = did_you_mean(key.text, by_name)
-            asked.fault(key.place, "unknown-key", f"'{key.text}' is no key of {asked.what}.", hint)
-            meant.add(hint)
+            meant.add(_unknown_key(key, value, by_name, asked))
             continue
         field = by_name[key.text]
         places[key.text] = value.place
         if isinstance(value, YamlSequence):
             places.update((f"{key.text}.{number}", item.place) for number, item in enumerate(value.items))
         read = field.read(value, Asked(key.text, asked.problems))
-        if read is None:
-            spoiled = spoiled or field.required
-        else:
+        if read is not None:
             data[key.text] = read
+        spoiled = spoiled or (read is None and field.required)
     for field in fields:
         if field.required and field.name not in places:
             spoiled = True
             # A slip of the pen in a key that has to be there is one fault, not two.
             if f"Did you mean '{field.name}'?" not in meant:
-                what = asked.what[:1].upper() + asked.what[1:]
-                asked.fault(node.place, "missing-key", f"{what} needs the key '{field.name}'.", field.help)
+                message = f"{asked.what[:1].upper()}{asked.what[1:]} needs the key '{field.name}'."
+                asked.fault(node.place, "missing-key", message, field.help)
     return None if spoiled else Values(data, places, node.place)
+
+
+def _unknown_key(key: Scalar, value: Node, known: Iterable[str], asked: Asked) -> str:
+    """Report a key that does not exist; the hint that was given for it."""
+    if key.text[:1].isdigit() and isinstance(value, Scalar) and not value.text:
+        message = f"'{key.text}' stands behind a comma: within braces a decimal comma parts a number in two."
+        asked.fault(key.place, "decimal-comma", message, "Write a decimal point.")
+        return ""
+    hint = did_you_mean(key.text, known)
+    asked.fault(key.place, "unknown-key", f"'{key.text}' is no key of {asked.what}.", hint)
+    return hint
 
 
 def _shape(node: Node) -> str:
@@ -155,8 +162,7 @@ def whole(low: int, high: int) -> Reader:
             return None
         if scalar.text.isdecimal() and low <= int(scalar.text) <= high:
             return int(scalar.text)
-        message = f"'{scalar.text}' at '{asked.what}'; expected a whole number from {low} to {high}."
-        asked.fault(scalar.place, "number", message)
+        asked.fault(scalar.place, "number", f"'{scalar.text}' at '{asked.what}'; expected one from {low} to {high}.")
         return None
 
     return read
@@ -183,8 +189,7 @@ def quantity(
         except QuantityError as error:
             asked.fault(scalar.at(error.offset), error.code, error.message, error.hint)
             return None
-        wrong = (positive and found.value <= 0) or (not_negative and found.value < 0)
-        if wrong:
+        if (positive and found.value <= 0) or (not_negative and found.value < 0):
             least = "above zero" if positive else "zero or more"
             asked.fault(scalar.place, "sign", f"'{scalar.text}' at '{asked.what}': expected {least}.", instead)
             return None
@@ -197,13 +202,12 @@ def quantity(
 
 
 def _no_level(scalar: Scalar, asked: Asked) -> None:
-    message = f"'{scalar.text}' at '{asked.what}': a level needs a power or voltage above zero."
-    asked.fault(scalar.place, "sign", message)
+    said = f"'{scalar.text}' at '{asked.what}'"
+    asked.fault(scalar.place, "sign", f"{said}: a level needs a power or voltage above zero.")
 
 
 def _repeated(node: YamlSequence, dimension: str | tuple[str, ...], asked: Asked) -> Quantity | None:
-    texts: list[str] = []
-    before = len(asked.problems)
+    texts, before = list[str](), len(asked.problems)
     for item in node.items:
         scalar = _scalar(item, asked, "a number with its unit")
         if scalar is None:
@@ -236,8 +240,8 @@ def many(reader: Reader, *, least: int = 1) -> Reader:
             asked.fault(node.place, "empty", f"An empty list stands at '{asked.what}'; expected one item at least.")
             return None
         if len(found) < least:
-            message = f"The list at '{asked.what}' is {len(found)} long; it needs {least} items at least."
-            asked.fault(node.place, "too-few", message)
+            said = f"The list at '{asked.what}' is {len(found)} long"
+            asked.fault(node.place, "too-few", f"{said}; it needs {least} items at least.")
             return None
         return None if any(item is None for item in found) else tuple(found)
 
@@ -249,9 +253,8 @@ def pair(reader: Reader) -> Reader:
 
     def read(node: Node, asked: Asked) -> tuple[Any, Any] | None:
         if not isinstance(node, YamlSequence) or len(node.items) != 2:
-            asked.fault(
-                node.place, "pair", f"{_shape(node)} stands at '{asked.what}'; expected two values, [low, high]."
-            )
+            message = f"{_shape(node)} stands at '{asked.what}'; expected two values, [low, high]."
+            asked.fault(node.place, "pair", message)
             return None
         low, high = (reader(item, asked) for item in node.items)
         return None if low is None or high is None else (low, high)
@@ -273,9 +276,8 @@ def named(reader: Reader) -> Reader:
 
     def read(node: Node, asked: Asked) -> Values | None:
         if not isinstance(node, Mapping) or not node.pairs:
-            asked.fault(
-                node.place, "not-mapping", f"{_shape(node)} stands at '{asked.what}'; expected names with values."
-            )
+            message = f"{_shape(node)} stands at '{asked.what}'; expected names with values."
+            asked.fault(node.place, "not-mapping", message)
             return None
         data: dict[str, Any] = {}
         places: dict[str, Place] = {}

@@ -7,6 +7,8 @@ from pathlib import Path
 
 from logbook.kind import Kind
 from logbook.kinds import registry
+from logbook.quantities import KNOWN
+from logbook.units import DIMENSIONS
 
 BEGIN = "<!-- kinds: from here to the end mark this text is drawn from the registry -->"
 END = "<!-- kinds: end -->"
@@ -19,7 +21,26 @@ def kinds_guide() -> str:
     """Every kind with what it is for, its keys, and its example, as Markdown."""
     kinds = registry()
     words = [word for word in _ORDER if word in kinds] + sorted(set(kinds) - set(_ORDER))
-    return "\n".join(_kind(kinds[word]) for word in words)
+    return "\n".join([*(_kind(kinds[word]) for word in words), *_quantities()])
+
+
+_OF_QUANTITIES = (
+    "For `results` of a reading and `quantity` of a target. A level at which something is taken is carried in the "
+    "name: `bandwidth_3db`, `shape_factor_60_3`. The smallest change that matters is in dB, or a part of the value; "
+    "`matters` in `mkdocs.yml` sets another one. Any other name is fine with `{value: ..., better: ...}`."
+)
+
+
+def _quantities() -> list[str]:
+    """The quantities known by name, with the unit, the better direction, and the smallest change that matters."""
+    lines = ["### Quantities known by name", "", _OF_QUANTITIES, ""]
+    lines += ["| name | unit | better | smallest change |", "|---|---|---|---|"]
+    for known in KNOWN.values():
+        dimension = DIMENSIONS[known.dimension]
+        base = dimension.base or "1"
+        least = f"{known.matters:g} dB" if base.startswith("dB") else f"{100 * known.matters:g} %"
+        lines.append(f"| `{known.name}` | {base} | {known.better} | {least} |")
+    return [*lines, ""]
 
 
 def _kind(kind: Kind) -> str:
@@ -31,6 +52,8 @@ def _kind(kind: Kind) -> str:
         lines += ["", f"> {kind.hazard}"]
     lines += ["", f"Keys (required ones in bold): {keys}.", ""]
     lines += [f"```yaml {kind.word}", kind.example.rstrip("\n"), "```", ""]
+    if kind.more:
+        lines += [kind.more.strip(), ""]
     return "\n".join(lines)
 
 

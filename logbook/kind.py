@@ -127,6 +127,7 @@ class Kind:
     `declare` turns one mapping into hardware, a bench, a target ... before anything is calculated; `calculate`
     yields the results; `show` the pieces for the page. A kind without them lists its fields, each compared by its
     direction.
+    `more` is Markdown for the guide: what an example and a list of keys leave open.
     `name_key` is the field by which later blocks of this kind find earlier ones of the same name.
     """
 
@@ -142,3 +143,4 @@ class Kind:
     show: Callable[[Block, Outcome, View], list[Piece]] | None = None
     name_key: str = ""
     hazard: str = ""
+    more: str = ""

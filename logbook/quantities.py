@@ -91,6 +91,22 @@ KNOWN = {row[0]: KnownQuantity(*row) for row in _ROWS}
 _LEVELS = re.compile(r"_\d+(?:\.\d+)?(?:db|_\d+(?:\.\d+)?)$")
 
 
+# What people write for a quantity that has another name here.
+SPOKEN = {
+    "noise figure": "nf",
+    "noise_figure": "nf",
+    "conversion_gain": "gain",
+    "conversion gain": "gain",
+    "ip3": "iip3",
+    "p1db": "op1db",
+    "loss": "insertion_loss",
+    "noise": "noise_floor",
+    "power": "output_level",
+    "output_power": "output_level",
+    "current": "supply_current",
+}
+
+
 def known_quantity(name: str) -> KnownQuantity | None:
     """The quantity of this name, whatever level the name carries; None for a name of the user's own."""
     return KNOWN.get(name) or KNOWN.get(_LEVELS.sub("", name))

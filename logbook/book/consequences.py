@@ -18,9 +18,10 @@ def drop_consequences(files: Iterable[ReadFile], problems: Problems) -> None:
         return
     roots = [problem.place for problem in problems if not problem.about]
     lost = _lost_words(files, roots + [named for place in roots for named in problems.naming(place.file)])
-    if not lost:
-        return
-    problems.drop(p for p in following if p.about == ANY_FAULT or set(_WORD.findall(p.about)) <= lost)
+    problems.drop(p for p in following if p.about != ANY_FAULT and set(_WORD.findall(p.about)) <= lost)
+    left = list(problems)
+    if any(p.about != ANY_FAULT for p in left):
+        problems.drop(p for p in left if p.about == ANY_FAULT)
 
 
 def _lost_words(files: Iterable[ReadFile], roots: list[Place]) -> set[str]:

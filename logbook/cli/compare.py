@@ -54,7 +54,7 @@ def _part(title: str, deltas: list[Delta], silent: str, book: Book, budget: bool
         return [Heading(2, title), Note(silent)]
     pieces: list[Piece] = [Heading(2, title), deltas_table(deltas, "", chains=True)]
     for d in deltas if budget else ():
-        if d.budget:
+        if d.budget and (d.u or d.basis != PREDICTED):
             words = result_words(d.quantity, d.at_hz, d.name, d.chain)
             pieces += [Heading(3, f"Doubt of the change in {words}"), *budget_pieces(d, book.settings.coverage)]
     return pieces

@@ -9,7 +9,7 @@ from logbook.detector import Calibration
 from logbook.kind import Session
 from logbook.model import DERIVED, MEASURED, PLANNED, PREDICTED, Conditions, Parts, Result, Source, Values
 from logbook.problems import Place, did_you_mean
-from logbook.quantities import Better, KnownQuantity, known_quantity
+from logbook.quantities import KNOWN, SPOKEN, Better, KnownQuantity, known_quantity
 from logbook.quantity import Quantity, level_dbm
 from logbook.quantity_display import show_value
 from logbook.terms import Shown, on_equal_terms
@@ -24,6 +24,12 @@ class Setting:
     bench: Bench | None
     conditions: Conditions
     session: Session
+
+
+def likely_quantity(name: str) -> str:
+    """A sentence that names the quantity that was probably meant, or nothing."""
+    spoken = SPOKEN.get(name.lower())
+    return f"Did you mean '{spoken}'?" if spoken else did_you_mean(name, KNOWN)
 
 
 def setting_of(values: Values, session: Session) -> Setting | None:

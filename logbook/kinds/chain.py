@@ -175,6 +175,17 @@ def show(block: Block, outcome: Outcome, view: View) -> list[Piece]:
     return show_chain(block, outcome, view)
 
 
+MORE = f"""\
+Keys of a stage: {", ".join(f"`{field.name}`" for field in STAGE_FIELDS)}. A stage with `lo` is a mixer; `lo` is a
+frequency, or `{{follows: signal, offset: 21.4 MHz}}`. Gain is given as `gain`, `loss`, `gain_range` (set by the
+lineup) or `response` (|S21| from a `.s2p`); noise as `nf`, as `nf_dsb` on a mixer, as `noise_voltage` and
+`noise_current` with `termination`, or not at all on a passive stage.
+
+`lineup: {{input: -42 dBm, at: detector, level: -12 dBm, adjust: vga}}` solves the gain of `vga` so that -42 dBm at the
+chain's input puts -12 dBm into `detector`. `snr` is the signal to noise wanted, for the sensitivity; `strongest` and
+`weakest` are the signals expected; `external_noise` is `galactic`, or Fa in dB, instead of `source_temperature`.
+"""
+
 KIND = Kind(
     word="chain",
     title="Signal chain",
@@ -184,4 +195,5 @@ KIND = Kind(
     needs_revision=True,
     declare=declare,
     show=show,
+    more=MORE,
 )

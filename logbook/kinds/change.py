@@ -179,6 +179,24 @@ def show(block: Block, outcome: Outcome, view: View) -> list[Piece]:
     return show_change(block, outcome, view)
 
 
+MORE = """\
+A step is one of `- insert: {...}` with `after:` or `before:`, `- replace: NAME` with `with: {...}`, `- set: NAME` with
+`to: {...}`, and `- remove: NAME`. In an entry with `state: planned` a `what_if` list holds alternatives; the page ranks
+them, and `parts` is what each costs. An alternative stands instead of `steps`, not on top of them:
+
+```yaml
+what_if:
+  - name: stronger mixer
+    steps:
+      - replace: mixer
+        with: {name: mixer, gain: -6 dB, nf: 6.5 dB, iip3: 20 dBm, lo: 71.5 MHz}
+    parts: 38.50 EUR
+```
+
+When the plan is built, write `as_planned: true` instead of `steps` under the same label. To build an alternative, write
+its steps.
+"""
+
 KIND = Kind(
     word="change",
     title="Change",
@@ -188,4 +206,5 @@ KIND = Kind(
     needs_revision=True,
     declare=declare,
     show=show,
+    more=MORE,
 )

@@ -6,11 +6,10 @@ from dataclasses import dataclass
 
 from logbook.fields import Asked, Field, choice, many, named, quantity, read_mapping, text
 from logbook.kind import Kind, Outcome, Session, View
-from logbook.kinds._measured import measured, not_on_a_plan, setting_of
+from logbook.kinds._measured import likely_quantity, measured, not_on_a_plan, setting_of
 from logbook.model import Block, Result
 from logbook.pieces import Piece
-from logbook.problems import did_you_mean
-from logbook.quantities import BETTER, KNOWN, Better, KnownQuantity, known_quantity
+from logbook.quantities import BETTER, Better, KnownQuantity, known_quantity
 from logbook.quantity import Quantity
 from logbook.stage_fields import LEVEL
 from logbook.units import DIMENSIONS
@@ -46,7 +45,7 @@ def _result(node: Node, asked: Asked) -> Given | None:
     value = quantity(_dimension(known), repeated=True)
     if isinstance(node, Scalar | YamlSequence):
         if known is None:
-            hint = did_you_mean(asked.what, KNOWN)
+            hint = likely_quantity(asked.what)
             hint = hint if hint.startswith("Did") else "A name of your own is written {value: 3.1 V, better: higher}."
             asked.fault(
                 asked.key_place or node.place, "unknown-quantity", f"'{asked.what}' is no quantity known by name.", hint
@@ -118,6 +117,13 @@ def show(block: Block, outcome: Outcome, view: View) -> list[Piece]:
     return show_results(block, outcome, view)
 
 
+MORE = """\
+`at` is the frequency at the chain's input, also where the output is read; `drive` is the level put in there. `through`
+names the parts of the bench's path that stand between unit and instrument; with `shown_at: unit` their losses are in
+the numbers already. `±` is a limit (divided by √3), a number in brackets a standard uncertainty. `through_detector`
+names the `staircase` of a detector; values are then in volts or divisions.
+"""
+
 KIND = Kind(
     word="reading",
     title="Readings",
@@ -128,4 +134,5 @@ KIND = Kind(
     needs_revision=True,
     calculate=calculate,
     show=show,
+    more=MORE,
 )

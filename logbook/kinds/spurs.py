@@ -185,6 +185,11 @@ def show(block: Block, outcome: Outcome, view: View) -> list[Piece]:
     return [*pieces, sources_piece(report.sources, report.order)]
 
 
+MORE = """\
+A source counts up to `order`, alone or with others; give it `harmonics: 20` to let its harmonics count up to the 20th.
+A candidate such as `lo − (28.6 MHz outside)` is a signal from outside at that frequency: image, half-IF or the IF.
+"""
+
 KIND = Kind(
     word="spurs",
     title="Spurs",
@@ -196,4 +201,5 @@ KIND = Kind(
     example=EXAMPLE,
     calculate=calculate,
     show=show,
+    more=MORE,
 )

@@ -236,6 +236,11 @@ def _level(found: Found, quantity_: str, value: float, setting: Setting, values:
     return None if result is None else replace(result, repeats=(), words=found.words)
 
 
+MORE = """\
+A file's head names its units, as in `Frequency (MHz);Level (dB)`; without them write `x: {column: 1, unit: MHz}` and
+`y: {column: 2, unit: dB}`. Columns are told by their head or by their number.
+"""
+
 KIND = Kind(
     word="sweep",
     title="Sweep",
@@ -252,4 +257,5 @@ KIND = Kind(
     calculate=calculate,
     show=show_sweep,
     name_key="name",
+    more=MORE,
 )

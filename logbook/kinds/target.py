@@ -7,10 +7,10 @@ import re
 from logbook.fields import Asked, Field, quantity, text
 from logbook.findings import Target
 from logbook.kind import Kind, Outcome, Session, View
+from logbook.kinds._measured import likely_quantity
 from logbook.model import Block, Values, result_key
 from logbook.pieces import Piece
-from logbook.problems import did_you_mean
-from logbook.quantities import KNOWN, known_quantity
+from logbook.quantities import known_quantity
 from logbook.quantity import Quantity, QuantityError, has_level, level_dbm, read_quantity
 from logbook.showing.targets import targets_table
 from logbook.stage_fields import LEVEL
@@ -50,7 +50,7 @@ def declare(values: Values, session: Session) -> Target | None:
     chain = session.chain_name(values)
     name = values["quantity"]
     known = known_quantity(name)
-    if known is None and (hint := did_you_mean(name, KNOWN)).startswith("Did"):
+    if known is None and (hint := likely_quantity(name)).startswith("Did"):
         session.fault(values.place("quantity"), "unknown-quantity", f"'{name}' is no quantity known by name.", hint)
         return None
     dimension: str | tuple[str, ...] = known.dimension if known else tuple(DIMENSIONS)

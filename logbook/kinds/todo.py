@@ -16,7 +16,7 @@ FIELDS = (
 
 EXAMPLE = """\
 - {id: vga-supply, what: find out why the supply of the vga rises with temperature}
-- {done: input-relay}
+- {id: input-relay, what: replace the input relay}
 """
 
 
@@ -48,19 +48,23 @@ def _opened(what: str, todo: Todo | None, view: View) -> Line:
         return (Strong("open: "), what)
     if todo.closed == view.entry.path:
         return (Strong("done: "), what)
-    return (Strong("done since: "), what, " ", Link("closed here", f"entry:{todo.closed}"))
+    return (Strong("done since: "), what, " ", Link(f"in {_stem(todo.closed)}", f"entry:{todo.closed}"))
+
+
+def _stem(path: str) -> str:
+    return path.rpartition("/")[2].removesuffix(".md")
 
 
 def _closed(name: str, todo: Todo | None) -> Line:
     if todo is None:
         return (Strong("done: "), name)
-    return (Strong("done: "), todo.what, " ", Muted("opened in "), Link("this entry", f"entry:{todo.opened}"))
+    return (Strong("done: "), todo.what, " ", Muted("opened in "), Link(_stem(todo.opened), f"entry:{todo.opened}"))
 
 
 KIND = Kind(
     word="todo",
     title="Open items",
-    about="What is left to do: an item is opened with an id, and closed with `done` in a later entry.",
+    about="What is left to do: an item is opened with an id, and closed by `done: vga-supply` in a later entry.",
     fields=FIELDS,
     example=EXAMPLE,
     many=True,

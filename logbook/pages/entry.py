@@ -5,10 +5,11 @@ from __future__ import annotations
 from logbook.book import Book
 from logbook.kinds import registry
 from logbook.model import BUILT, Block, Entry
-from logbook.pieces import Note, Piece, Span, Text, Written
+from logbook.pieces import Muted, Note, Piece, Span, Text, Written
 from logbook.showing.deltas import revision_change
 from logbook.showing.readings import show_results
 from logbook.showing.regressions import regression_pieces
+from logbook.showing.words import doubt_words
 
 
 def block_pieces(book: Book, entry: Entry, block: Block) -> list[Piece]:
@@ -42,4 +43,7 @@ def tail_pieces(book: Book, entry: Entry) -> list[Piece]:
     """What this entry's readings show to have got worse: where several read the same, the one that was compared."""
     revision = book.history.of(entry)
     keys = book.findings.compared_in.get(entry.path)
-    return regression_pieces(book.findings, revision.label, keys) if revision is not None and keys else []
+    found = regression_pieces(book.findings, revision.label, keys) if revision is not None and keys else []
+    if any(result.u is not None for block in entry.blocks for result in book.outcome(block).results):
+        found.append(Text(Muted(doubt_words(book.settings.coverage))))
+    return found

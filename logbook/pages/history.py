@@ -9,10 +9,25 @@ from logbook.compare.equal import in_rbw
 from logbook.compare.targets import fits
 from logbook.findings import Target
 from logbook.model import PREDICTED, Result
-from logbook.pieces import Axis, Branch, Chart, Heading, Limit, Line, Note, Picture, Piece, Series, Table, Tree
+from logbook.pieces import (
+    Axis,
+    Branch,
+    Chart,
+    Heading,
+    Limit,
+    Line,
+    Muted,
+    Note,
+    Picture,
+    Piece,
+    Series,
+    Table,
+    Text,
+    Tree,
+)
 from logbook.quantity_display import show_value
 from logbook.showing.targets import target_words
-from logbook.showing.words import result_words, revision_link
+from logbook.showing.words import doubt_words, result_words, revision_link
 
 NAN = float("nan")
 
@@ -25,6 +40,7 @@ def history_pieces(book: Book) -> list[Piece]:
     courses = _courses(book)
     if courses:
         pieces.append(Heading(2, "Results over the revisions"))
+        pieces.append(Text(Muted(doubt_words(book.settings.coverage))))
         for key, results in courses.items():
             pieces += _course(book, key, results)
     return pieces

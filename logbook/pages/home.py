@@ -6,15 +6,15 @@ from math import isnan
 
 from logbook.book import Book
 from logbook.findings import Target, TargetVerdict
-from logbook.model import TRIAL
+from logbook.model import PLANNED, TRIAL
 from logbook.pages.links import entry_link
-from logbook.pieces import Card, Cards, Heading, Items, Line, Link, Muted, Note, Piece, Table, Text, Verdict
+from logbook.pieces import Card, Cards, Heading, Items, Line, Link, Muted, Note, Piece, Span, Text, Verdict
 from logbook.quantity_display import show_delta, show_value
 from logbook.revision import Revision
 from logbook.showing.deltas import moved_pieces
 from logbook.showing.regressions import regression_pieces
 from logbook.showing.targets import missing_words, probability_words, target_words
-from logbook.showing.words import difference_unit, revision_link
+from logbook.showing.words import difference_unit, doubt_words, revision_link
 
 _EMPTY = "There is no entry yet. Start one in a terminal with: logbook new"
 
@@ -30,6 +30,7 @@ def home_pieces(book: Book) -> list[Piece]:
         pieces += _scorecard(book, latest)
         pieces += _unaccepted(book)
         pieces += _last_change(book, latest)
+        pieces.append(Text(Muted(doubt_words(book.settings.coverage))))
     pieces += _ahead(book)
     pieces += _open_items(book)
     pieces += _timeline(book)
@@ -102,11 +103,12 @@ def _open_items(book: Book) -> list[Piece]:
 
 
 def _timeline(book: Book) -> list[Piece]:
-    rows: list[tuple[Line, ...]] = []
+    lines: list[Line] = []
     for entry in reversed(book.entries):
         revision = book.history.of(entry)
-        label: Line = "" if revision is None else (revision_link(revision.label),)
-        state = revision.state if revision is not None and revision.state in (TRIAL, "planned") else ""
-        rows.append((f"{entry.date}", Link(entry.title, f"entry:{entry.path}"), label, state))
-    table = Table(("date", "entry", "revision", ""), tuple(rows), "")
-    return [Heading(2, "Entries"), table]
+        line: list[Span] = [f"{entry.date} ", Link(entry.title, f"entry:{entry.path}")]
+        if revision is not None:
+            state = f", {revision.state}" if revision.state in (TRIAL, PLANNED) else ""
+            line += [" ", Muted("revision "), revision_link(revision.label), Muted(state)]
+        lines.append(tuple(line))
+    return [Heading(2, "Entries"), Items(tuple(lines))]

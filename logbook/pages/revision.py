@@ -11,7 +11,7 @@ from logbook.compare.verdicts import DISAGREES, GONE, NEW
 from logbook.findings import Delta
 from logbook.model import BUILT, PLANNED, PREDICTED
 from logbook.pages.links import entry_link
-from logbook.pieces import Heading, Items, Line, Note, Piece, Table, Text, Verdict
+from logbook.pieces import Heading, Items, Line, Muted, Note, Piece, Table, Text, Verdict
 from logbook.prediction import Terms
 from logbook.quantity_display import show_delta, show_value
 from logbook.revision import Revision
@@ -29,7 +29,7 @@ from logbook.showing.next_change import next_change_pieces
 from logbook.showing.plans import plan_pieces
 from logbook.showing.regressions import regression_pieces
 from logbook.showing.targets import targets_table
-from logbook.showing.words import change, difference_unit, reason, result_words
+from logbook.showing.words import change, difference_unit, doubt_words, reason, result_words
 
 
 def revision_pieces(book: Book, revision: Revision) -> list[Piece]:
@@ -40,6 +40,7 @@ def revision_pieces(book: Book, revision: Revision) -> list[Piece]:
     if revision.broken:
         words = "A problem in the entries keeps part of this revision from being computed."
         pieces.append(Note(words, "problem"))
+    pieces.append(Text(Muted(doubt_words(book.settings.coverage))))
     pieces += regression_pieces(book.findings, revision.label)
     pieces += _changes(book, revision)
     pieces += _targets(book, revision)
@@ -105,8 +106,7 @@ def _planned(book: Book, revision: Revision) -> list[Delta]:
     if plan is None:
         return []
     parent = book.revisions.get(plan.comes_from or "")
-    found = chain_deltas(plan, parent, book.predict, book.rules)
-    return [d for d in found if d.verdict != "same"]
+    return chain_deltas(plan, parent, book.predict, book.rules)
 
 
 def _side_by_side(measured: list[Delta], predicted: list[Delta], planned: list[Delta]) -> Table:

@@ -15,9 +15,9 @@ from logbook.pages.history import history_pieces
 from logbook.pages.links import entry_link
 from logbook.pages.parts import part_pieces
 from logbook.pages.revision import revision_pieces
-from logbook.pieces import Heading, Items, Line, Muted, Note, Page, Piece, Span, Table
+from logbook.pieces import Heading, Items, Line, Muted, Note, Page, Piece, Span, Table, Text
 from logbook.showing.targets import target_verdict_line, target_words
-from logbook.showing.words import plain
+from logbook.showing.words import doubt_words, plain
 
 
 def revision_path(label: str) -> str:
@@ -59,7 +59,8 @@ def generated_pages(book: Book) -> list[Page]:
 
 def target_pieces(book: Book) -> list[Piece]:
     """Every target against every revision."""
-    labels = list(book.revisions)
+    # The latest first: on a phone it is the one that is seen.
+    labels = list(reversed(book.revisions))
     if not book.history.targets:
         return [Note("No target is set yet: a target block says what the project wants to reach.")]
     by = {(v.target.key, v.revision): v for v in book.findings.targets}
@@ -73,7 +74,8 @@ def target_pieces(book: Book) -> list[Piece]:
             cells.append((value, " ", basis, " ", *target_verdict_line(found)))
         rows.append(tuple(cells))
     head = ("target", "limit", *(f"{label} ({book.revisions[label].state})" for label in labels))
-    return [Table(head, tuple(rows), "Targets by revision", frozenset({1}))]
+    table = Table(head, tuple(rows), "Targets by revision", frozenset({1}))
+    return [table, Text(Muted(doubt_words(book.settings.coverage)))]
 
 
 def todo_pieces(book: Book) -> list[Piece]:

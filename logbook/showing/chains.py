@@ -201,4 +201,7 @@ def assumptions(prediction: Prediction) -> list[Piece]:
             lines.append(f"no {words[name]} given, taken as ideal: {', '.join(stages)}")
         elif len(stages) == count:
             lines.append(f"no stage gives a {words[name]}: its total is not known")
+    mixers = [s.name for s in prediction.chain.stages if s.oscillator and "image_rejection" not in s.parameters]
+    if mixers:
+        lines.append(f"no image rejection given, noise at the image taken as fully rejected: {', '.join(mixers)}")
     return [Items(tuple(lines))] if lines else []

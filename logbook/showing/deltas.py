@@ -7,7 +7,7 @@ from math import isnan
 
 from logbook.compare.verdicts import GONE, NEW, SAME
 from logbook.findings import Agreement, Delta
-from logbook.pieces import Folded, Line, Muted, Piece, Span, Table, Text, Verdict
+from logbook.pieces import Folded, Items, Line, Muted, Piece, Span, Table, Text, Verdict
 from logbook.quantity_display import show_delta, show_value
 from logbook.showing.words import change, difference_unit, percent, plain, reason, result_words, revision_link
 
@@ -42,7 +42,7 @@ def moved_pieces(deltas: Iterable[Delta], caption: str, *, chains: bool = False)
     found = list(deltas)
     pieces = deltas_pieces([d for d in found if d.verdict != SAME], caption, chains=chains)
     same = [result_words(d.quantity, d.at_hz, d.name, d.chain if chains else "") for d in found if d.verdict == SAME]
-    return [*pieces, Text(("The same within doubt: ", Muted("; ".join(same)), "."))] if same else pieces
+    return [*pieces, *_named("The same within doubt", same)] if same else pieces
 
 
 def one_sided(deltas: Iterable[Delta], *, chains: bool = False) -> list[Piece]:
@@ -53,8 +53,18 @@ def one_sided(deltas: Iterable[Delta], *, chains: bool = False) -> list[Piece]:
             result_words(d.quantity, d.at_hz, d.name, d.chain if chains else "") for d in found if d.verdict == verdict
         ]
         if names:
-            pieces.append(Text((f"{words}: ", Muted("; ".join(names)), ".")))
+            pieces += _named(words, names)
     return pieces
+
+
+# More names than this stand back until asked for.
+_FEW = 6
+
+
+def _named(words: str, names: list[str]) -> list[Piece]:
+    if len(names) <= _FEW:
+        return [Text((f"{words}: ", Muted("; ".join(names)), "."))]
+    return [Folded(f"{words}: {len(names)} results", (Items(tuple(names)),))]
 
 
 def budget_pieces(delta: Delta, k: float) -> list[Piece]:
@@ -71,7 +81,10 @@ def budget_pieces(delta: Delta, k: float) -> list[Piece]:
     if delta.u is None:
         total = "What was stated cancels, and what is fresh in each reading was not stated."
     else:
-        total = f"Together u = {show_value(delta.u, unit)}; with k = {k:g}, ± {show_value(k * delta.u, unit)}."
+        total = (
+            f"Together u = {show_value(delta.u, unit)}; with k = {k:g}, ± {show_value(k * delta.u, unit)}. A source's "
+        )
+        total += "u is what it makes of either side, its sensitivity what is left of that in the change."
     return [table, Text(total)]
 
 
@@ -100,8 +113,11 @@ def shares_pieces(found: Agreement) -> list[Piece]:
         return []
     weighty = [s for s in found.shares if s.share >= _WEIGHTY] or list(found.shares[:1])
     rows: list[tuple[Line, ...]] = [(s.source.words, percent(s.share), show_delta(s.shift, s.unit)) for s in weighty]
+    if found.u_measured and found.u_predicted:
+        left = (found.measured - found.predicted) / (1 + (found.u_predicted / found.u_measured) ** 2)
+        rows.append(("the reading itself", "", show_delta(left, difference_unit(found.unit))))
     what = result_words(found.result.quantity, found.result.at_hz, found.result.name)
-    caption = f"Where the difference in {what} could come from"
+    caption = f"Where the difference in {what} could come from, all together"
     head = ("stage and parameter", "share of the prediction's variance", "most likely shift")
     pieces: list[Piece] = [Table(head, tuple(rows), caption, frozenset({1, 2}))]
     rest = [s.source.words for s in found.shares if s not in weighty]

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping, Sequence
 from math import isfinite, isnan
 
 from logbook.compare.next_change import NextChange, StageNeeds
@@ -43,14 +44,28 @@ def _row(row: StageNeeds, found: NextChange, unit: str) -> tuple[Line, ...]:
     return (row.stage, row.parameter, show_value(row.now, own), needed, ideal, percent(row.share))
 
 
-def weighed_table(weighed: list[Weighed], caption: str) -> Table:
-    """Alternatives of a plan, best first: predicted result, part of the gap closed, cost."""
+def weighed_table(weighed: list[Weighed], caption: str, lost: Mapping[str, Sequence[str]]) -> Table:
+    """Alternatives of a plan, best first: expected result, part of the gap closed, cost, and other targets lost."""
     rows: list[tuple[Line, ...]] = []
     for each in weighed:
         unit = each.target.unit
         cost = "" if each.cost is None else f"{each.cost:.2f} {each.currency}"
         closes = "" if each.closes is None or isnan(each.closes) else percent(each.closes)
         reached: Line = each.verdict
-        rows.append((each.name, show_value(each.value, unit, each.u), closes, reached, cost))
-    head = ("alternative", "predicted", "part of the gap closed", "reaches the target", "parts")
-    return Table(head, tuple(rows), caption, frozenset({1, 2, 4}))
+        loses = "; ".join(lost.get(each.name, ()))
+        rows.append((each.name, show_value(each.value, unit, each.u), closes, reached, cost, loses))
+    head = (
+        "alternative",
+        "expected",
+        "part of the gap closed",
+        "reaches the target",
+        "parts",
+        "may no longer meet",
+    )
+    kept = [i for i in range(len(head)) if i < 4 or any(row[i] for row in rows)]
+    return Table(
+        tuple(head[i] for i in kept),
+        tuple(tuple(row[i] for i in kept) for row in rows),
+        caption,
+        frozenset(place for place, i in enumerate(kept) if i in (1, 2, 4)),
+    )

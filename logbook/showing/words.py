@@ -82,6 +82,11 @@ def difference_unit(unit: str) -> str:
     return {"degC": "K"}.get(unit, "dB" if unit.startswith("dB") else unit)
 
 
+def doubt_words(coverage: float) -> str:
+    """What stands behind ± on the pages."""
+    return f"Behind ± stands the standard uncertainty (k = 1); verdicts and error bars use k = {coverage:g}."
+
+
 def revision_link(label: str) -> Link:
     """A link to a revision's page."""
     return Link(label, f"revision:{label}")

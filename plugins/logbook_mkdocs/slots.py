@@ -33,19 +33,19 @@ def with_slots(book: Book, entry: Entry, markdown: str) -> str:
         line = f'<p class="lb-search">{words}</p>' if words else ""
         return f"\n{slot(block.id)}\n\n{line}\n" if line else f"\n{slot(block.id)}\n"
 
-    head = _after_title(replace_fences(markdown, replaced))
+    head = _after_title(replace_fences(markdown, replaced), entry.title)
     return f"{head}\n\n{slot(TAIL)}\n"
 
 
-def _after_title(markdown: str) -> str:
-    """The head's slot behind the first heading of level 1, or at the top where the text has none."""
+def _after_title(markdown: str, title: str) -> str:
+    """The head's slot behind the first heading of level 1; a text that begins without one gets the entry's title."""
     lines = markdown.split("\n")
     for index, line in enumerate(lines):
         if line.startswith("# "):
             return "\n".join([*lines[: index + 1], "", slot(HEAD), "", *lines[index + 1 :]])
         if line.strip():
             break
-    return f"{slot(HEAD)}\n\n{markdown}"
+    return f"# {title}\n\n{slot(HEAD)}\n\n{markdown}"
 
 
 def _search_words(book: Book, entry: Entry, number: int) -> str:

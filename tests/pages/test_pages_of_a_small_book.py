@@ -143,11 +143,11 @@ def test_history_is_a_tree_with_side_branches_and_courses() -> None:
 def test_targets_by_revisions() -> None:
     read = page("targets.md")
     (table,) = read.tables.values()
-    assert [cell.split()[0] for cell in table[0][2:]] == ["A", "B", "T", "P"]
+    assert [cell.split()[0] for cell in table[0][2:]] == ["P", "T", "B", "A"]
     assert len(table) == 3
     noise, figure = table[1], table[2]
-    assert "measured" in noise[2]
-    assert "measured misses" in noise[3]
+    assert "measured" in noise[5]
+    assert "measured misses" in noise[4]
     assert all("predicted" in cell for cell in figure[2:])
 
 

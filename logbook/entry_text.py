@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import codecs
 import re
-from collections.abc import Callable
+from collections.abc import Callable, Collection
 from dataclasses import dataclass
 
 from logbook.fences import Fence, find_fences
@@ -29,12 +29,12 @@ _FRONT_END = re.compile(r"(?:---|\.\.\.)[ \t]*")
 _KEY = re.compile(r"[A-Za-z][\w -]*:(?:\s|$)")
 
 
-def scan(text: str, path: str, problems: Problems) -> EntryText:
-    """Find the front matter and the fences of blocks in a text with LF line ends."""
+def scan(text: str, path: str, problems: Problems, kinds: Collection[str] = ()) -> EntryText:
+    """Find the front matter and the fences of blocks in a text with LF line ends; `kinds` are the words of blocks."""
     lines = text.split("\n")
     front_end = _front_end(lines, path, problems)
     has_front = front_end > 0
-    fences = tuple(fence for fence, _ in find_fences(text, lines, front_end, path, problems))
+    fences = tuple(fence for fence, _ in find_fences(text, lines, front_end, path, problems, kinds))
     front = "".join(line + "\n" for line in lines[1 : front_end - 1]) if has_front else None
     if lines and not lines[-1]:
         lines.pop()

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Collection, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import islice
 from math import inf
@@ -76,7 +76,7 @@ class _Mark:
 
 
 def find_fences(
-    text: str, lines: Sequence[str], start: int, path: str, problems: Problems
+    text: str, lines: Sequence[str], start: int, path: str, problems: Problems, kinds: Collection[str] = ()
 ) -> Iterator[tuple[Fence, str]]:
     """The fences of blocks from line `start` on, each with what stands before it in its line."""
     marks = _marks(text)
@@ -93,7 +93,7 @@ def find_fences(
             if not end.closed:
                 _not_closed(mark, end.line, len(lines), path, problems)
                 unclosed.update(_worth_knowing(mark, end))
-            _strange(mark, path, problems)
+            _strange(mark, path, problems, kinds)
             if mark.kind and not mark.marker:
                 yield _fence(mark, end.line, end.closed, lines), mark.prefix
             if end.closed or mark.kind:
@@ -191,12 +191,15 @@ def _not_closed(mark: _Mark, end: int, line_count: int, path: str, problems: Pro
     problems.add(Place(path, mark.line + 1, column), "unclosed-fence", message, hint)
 
 
-def _strange(mark: _Mark, path: str, problems: Problems) -> None:
+def _strange(mark: _Mark, path: str, problems: Problems, kinds: Collection[str]) -> None:
     """A fence that looks like a block's and is none."""
     place = Place(path, mark.line + 1, len(mark.prefix) + len(mark.marker) + 1)
     if mark.kind and mark.marker:
         message = f"The block's fence stands behind '{mark.marker.strip()}' in its line, so it is not read."
         problems.add(place, "fence-position", message, "Begin it in a line of its own, indented to the list's text.")
+    elif mark.info in kinds:
+        message = f"A fence '{mark.info}' is shown as it is; a block's fence says that it is YAML."
+        problems.add(place, "fence-info", message, f"Write 'yaml {mark.info}'.")
     elif _KIND_AND_MORE.fullmatch(mark.info) and "=" not in mark.info.split()[1]:
         message = f"'{mark.info}' holds more than the word yaml and a kind, so the block is not read."
         problems.add(place, "fence-info", message, f"Write '{' '.join(mark.info.split()[:2])}' alone.")

@@ -39,7 +39,7 @@ class ReadFile:
 
 def read_file(source: SourceFile, kinds: Mapping[str, Kind], problems: Problems) -> ReadFile:
     """Read one file; whatever is wrong in it is in `problems`."""
-    written = scan(decode(source.data, source.path, problems), source.path, problems)
+    written = scan(decode(source.data, source.path, problems), source.path, problems, kinds)
     front = _front(written, problems)
     blocks = tuple(
         _block(source.path, number, fence, kinds, problems) for number, fence in enumerate(written.fences, start=1)

@@ -195,6 +195,9 @@ def whole_plan(avoid: Values, values: Values, search: Search) -> Plan | None:
         return None
     ifs = [each.value for each in avoid.get("if", ())]
     width = search.bandwidth_hz
+    if chain is None and session.broken and (not ifs or width is None):
+        # The chain would say it, and it could not be made: that fault is reported where it stands.
+        return None
     if chain is not None:
         spots = spots_of(chain, search.sources, chain.signal_hz, 0.0)
         ifs = ifs or [spot.frequency_hz for spot in spots[1:2]]

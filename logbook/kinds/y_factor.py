@@ -13,7 +13,7 @@ from logbook.model import Block, Result, Source, Values
 from logbook.physics.constants import T0
 from logbook.physics.propagation import curved, propagate
 from logbook.physics.y_factor import noise_figure, without_second_stage
-from logbook.problems import did_you_mean
+from logbook.problems import CAUTION, did_you_mean
 from logbook.quantity import Quantity, level_dbm
 from logbook.showing.y_factor import SOURCES, YFactorShown, show_y_factor
 from logbook.stage_fields import LEVEL
@@ -103,6 +103,9 @@ def _one(values: Values, setting: Setting, session: Session) -> YFactorShown | N
     value, parts = propagate(given.first, inputs)
     plain = {name: number for name, (number, _) in inputs.items()}
     words = _why_not(given, plain)
+    if words:
+        message = f"No noise figure comes of this: {words}."
+        session.problems.add(values.start, "y-factor", message, "Look at the readings again.", CAUTION)
     at = values.get("at")
     result = derived(
         "nf",

@@ -19,6 +19,7 @@ from logbook.showing.chains import chain_pieces
 from logbook.showing.deltas import (
     agreement_table,
     budget_pieces,
+    delta_words,
     deltas_table,
     folded,
     one_sided,
@@ -116,7 +117,7 @@ def _side_by_side(measured: list[Delta], predicted: list[Delta], planned: list[D
 
     rows: list[tuple[Line, ...]] = []
     for d in measured:
-        row: list[Line] = [result_words(d.quantity, d.at_hz, d.name, d.chain), d.from_]
+        row: list[Line] = [delta_words(d, chains=True), d.from_]
         row += [_figure(d.before, d.unit), _figure(d.after, d.unit), change(d)]
         row += [beside(planned, d)] if planned else []
         row += [beside(predicted, d)]

@@ -8,8 +8,21 @@ from math import isnan
 from logbook.compare.verdicts import GONE, NEW, SAME
 from logbook.findings import Agreement, Delta
 from logbook.pieces import Folded, Items, Line, Muted, Piece, Span, Table, Text, Verdict
-from logbook.quantity_display import show_delta, show_value
+from logbook.quantities import known_quantity
+from logbook.quantity_display import show_delta, show_frequency, show_value
 from logbook.showing.words import change, difference_unit, percent, plain, reason, result_words, revision_link
+
+
+def delta_words(d: Delta, *, chains: bool = False) -> str:
+    """What a delta is of; a level of noise with the bandwidth that its two numbers are in."""
+    words = result_words(d.quantity, d.at_hz, d.name, d.chain if chains else "")
+    known = known_quantity(d.quantity)
+    if known is None or not known.noise or known.dimension != "level":
+        return words
+    rbw = d.after_result.conditions.rbw_hz if d.after_result is not None else None
+    if d.after_result is None:
+        return f"{words}, in the chain's bandwidth"
+    return words if rbw is None else f"{words}, in {show_frequency(rbw)}"
 
 
 def deltas_table(deltas: Iterable[Delta], caption: str, *, chains: bool = False) -> Table:
@@ -18,7 +31,7 @@ def deltas_table(deltas: Iterable[Delta], caption: str, *, chains: bool = False)
     for d in deltas:
         rows.append(
             (
-                result_words(d.quantity, d.at_hz, d.name, d.chain if chains else ""),
+                delta_words(d, chains=chains),
                 plain(d.before, d.unit),
                 plain(d.after, d.unit),
                 change(d),

@@ -82,7 +82,10 @@ def _number(value: float, u: float | None, unit: str, power: int, sign: str) -> 
     if unit in _DECIBELS or _is_currency(unit):
         shown = _fixed(scaled, 2, sign)
     else:
-        shown = _signed(f"{scaled:{sign}.{7 if unit == 'Hz' else 4}g}")
+        digits = 7 if unit == "Hz" else 4
+        # Without a prefix large numbers would be written as powers of ten.
+        plain = unit != "Hz" and 10**digits <= abs(scaled) < 1e9
+        shown = _signed(f"{scaled:{sign}.0f}" if plain else f"{scaled:{sign}.{digits}g}")
     return shown if u is None else f"{shown} \u00b1 0"
 
 

@@ -8,10 +8,11 @@ from logbook.bench import Bench
 from logbook.detector import Calibration
 from logbook.kind import Session
 from logbook.model import DERIVED, MEASURED, PLANNED, PREDICTED, Conditions, Parts, Result, Source, Values
+from logbook.prediction import TOTAL_UNITS
 from logbook.problems import Place, did_you_mean
 from logbook.quantities import KNOWN, SPOKEN, Better, KnownQuantity, known_quantity
 from logbook.quantity import Quantity, level_dbm
-from logbook.quantity_display import show_value
+from logbook.quantity_display import show_frequency, show_value
 from logbook.terms import Shown, on_equal_terms
 
 
@@ -128,7 +129,7 @@ def measured(
         shown=read.value,
         corrections=equal.corrections,
         bound=equal.bound,
-        notes=(*read.notes, *equal.notes, *overdue_note(setting)),
+        notes=(*read.notes, *equal.notes, *overdue_note(setting), *_far_note(quantity, at_hz, setting)),
         read_as=read.words,
         repeats=value.repeats,
         noise_ratio=1.0 if bench is None else bench.noise_ratio,
@@ -171,6 +172,21 @@ def derived(
         notes=(*notes, *overdue_note(setting)),
         noise_ratio=1.0 if setting.bench is None else setting.bench.noise_ratio,
     )
+
+
+# A frequency further from the chain's signal than this factor is as a rule a slip in the prefix.
+_FAR = 50.0
+
+
+def _far_note(quantity: str, at_hz: float | None, setting: Setting) -> tuple[str, ...]:
+    """A note when what the chain does was read at a frequency that cannot well be its signal's."""
+    chain = setting.session.chains.get(setting.chain)
+    if at_hz is None or chain is None or quantity not in TOTAL_UNITS:
+        return ()
+    if 1 / _FAR <= at_hz / chain.signal_hz <= _FAR:
+        return ()
+    here, signal = show_frequency(at_hz), show_frequency(chain.signal_hz)
+    return (f"read at {here}, and the signal of chain {chain.name} is at {signal}: is the prefix right?",)
 
 
 def overdue_note(setting: Setting) -> tuple[str, ...]:

@@ -214,3 +214,11 @@ def test_one_entry_with_a_chain() -> None:
     has(page("revisions/A.md", book), "First light", "22.30", "built")
     has(read_pieces(home_pieces(book)), "No target is set yet")
     assert "not known" not in read_pieces(home_pieces(book)).words
+
+
+def test_a_frequency_with_the_wrong_prefix_is_asked_about() -> None:
+    described = "chain: rx\nsignal: 144.3 MHz\nstages:\n  - {name: lna, gain: 20 dB, nf: 1 dB}\n"
+    blocks = (block("chain", described), block("reading", "at: 144.3 kHz\nresults:\n  gain: 20 dB\n"))
+    book = book_of(entry("01-01", *blocks, revision="A"))
+    (result,) = [r for r in book.results if r.basis == "measured"]
+    assert result.notes == ("read at 144.3 kHz, and the signal of chain rx is at 144.3 MHz: is the prefix right?",)

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
-
-import numpy as np
+from itertools import combinations
+from math import inf, sqrt
 
 from logbook.compare.deltas import u_of_difference
 from logbook.compare.equal import in_rbw, why_not_comparable
@@ -132,13 +132,12 @@ def _worst_pair(repeated: Sequence[Result], rules: Rules) -> Spread | None:
 def _by_fresh_doubt(repeated: Sequence[Result], rules: Rules) -> list[tuple[float, int, int]]:
     """Pairs that may differ beyond doubt, the largest difference over fresh doubt first: (their ratio, indices)."""
     rbw = next((r.conditions.rbw_hz for r in repeated if r.conditions.rbw_hz is not None), None)
-    value = np.array([in_rbw(result, rbw) for result in repeated])
-    fresh = np.array([sum(p * p for s, p in (r.parts or {}).items() if s.sort == "fresh") for r in repeated])
-    i, j = np.triu_indices(len(repeated), 1)
-    doubt = np.sqrt(fresh[i] + fresh[j])
-    with np.errstate(divide="ignore", invalid="ignore"):
-        ratio = np.abs(value[j] - value[i]) / doubt
-    # Without fresh doubt the ratio is infinite, and the pair is looked at first; alike to the last digit it is nan.
-    kept = np.flatnonzero(ratio > rules.coverage)
-    order = kept[np.argsort(-ratio[kept], kind="stable")]
-    return [(float(ratio[k]), int(i[k]), int(j[k])) for k in order]
+    value = [in_rbw(result, rbw) for result in repeated]
+    fresh = [sum(p * p for s, p in (r.parts or {}).items() if s.sort == "fresh") for r in repeated]
+    found = []
+    for i, j in combinations(range(len(repeated)), 2):
+        apart, doubt = abs(value[j] - value[i]), sqrt(fresh[i] + fresh[j])
+        if apart > rules.coverage * doubt:
+            # Without fresh doubt nothing says how large it may become, and the pair is looked at first.
+            found.append((apart / doubt if doubt else inf, i, j))
+    return sorted(found, key=lambda pair: -pair[0])

@@ -96,6 +96,10 @@ class Predictor:
 
     def __call__(self, chain: Chain, terms: Terms) -> Prediction:
         """The prediction for a chain under the terms."""
+        asked = (id(chain), terms)
+        found = self._known.get(asked)
+        if found is not None:
+            return found
         terms = terms.for_chain(chain)
         found = self._known.get((id(chain), terms))
         if found is None:
@@ -105,6 +109,7 @@ class Predictor:
                 evaluation = self._evaluated[key] = evaluate(chain, terms)
             # The prediction keeps its chain, so that no other can take the identity it is known by.
             found = self._known[(id(chain), terms)] = predict(chain, terms, evaluation)
+        self._known[asked] = found
         return found
 
 

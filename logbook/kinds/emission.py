@@ -8,10 +8,10 @@ from math import isfinite, isnan
 
 from logbook.emissions import Emission, Judged, LineLevel
 from logbook.entry_text import decode
-from logbook.fields import Field, choice, many, mapping, quantity, text
+from logbook.fields import Field, many, mapping, quantity, text
 from logbook.kind import Kind, Outcome, Session
 from logbook.kinds._measured import Setting, derived, measured, not_on_a_plan, setting_of
-from logbook.kinds.reading import AVERAGING
+from logbook.kinds._setting_fields import SETTING_FIELDS
 from logbook.model import MEASURED, Block, Result, Values
 from logbook.physics.uncertainty import linear_sum
 from logbook.problems import Place, did_you_mean
@@ -22,16 +22,9 @@ from logbook.showing.emission import show_emission
 from logbook.stage_fields import LEVEL
 
 FIELDS = (
-    Field("chain", text()),
+    *SETTING_FIELDS,
     Field("name", text()),
-    Field("bench", text()),
-    Field("through", many(text(), least=0)),
-    Field("rbw", quantity("frequency", positive=True)),
-    Field("vbw", quantity("frequency", positive=True)),
-    Field("averaging", choice(*AVERAGING)),
-    Field("shown_at", choice("instrument", "unit")),
     Field("drive", quantity(LEVEL)),
-    Field("temperature", quantity("temperature")),
     Field("at", quantity("frequency", positive=True), required=True, help="The carrier's frequency, 'at: 50.075 MHz'."),
     Field("carrier", quantity(LEVEL, repeated=True), required=True, help="Its level as read, 'carrier: -13.9 dBm'."),
     Field(

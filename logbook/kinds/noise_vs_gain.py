@@ -8,10 +8,10 @@ from math import isnan, nan, sqrt
 
 import numpy as np
 
-from logbook.fields import Field, choice, many, quantity, text
+from logbook.fields import Field, many, quantity, text
 from logbook.kind import Kind, Outcome, Session
 from logbook.kinds._measured import Setting, derived, measured, not_on_a_plan, overdue_note, setting_of
-from logbook.kinds.reading import AVERAGING
+from logbook.kinds._setting_fields import SETTING_FIELDS
 from logbook.model import Block, Result, Source, Values
 from logbook.physics.noise_split import (
     NoiseSplit,
@@ -30,17 +30,10 @@ from logbook.stage_fields import LEVEL
 
 FIELDS = (
     Field("name", text()),
-    Field("chain", text()),
+    *SETTING_FIELDS,
     Field("control", text()),
-    Field("bench", text()),
-    Field("through", many(text(), least=0)),
     Field("through_detector", text()),
     Field("at", quantity("frequency", positive=True)),
-    Field("rbw", quantity("frequency", positive=True)),
-    Field("vbw", quantity("frequency", positive=True)),
-    Field("averaging", choice(*AVERAGING)),
-    Field("shown_at", choice("instrument", "unit")),
-    Field("temperature", quantity("temperature")),
     Field("source_temperature", quantity("noise_temperature", positive=True)),
     Field(
         "settings",

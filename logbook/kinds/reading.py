@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from logbook.fields import Asked, Field, choice, many, named, quantity, read_mapping, text
+from logbook.fields import Asked, Field, choice, named, quantity, read_mapping, text
 from logbook.kind import Kind, Outcome, Session, View
 from logbook.kinds._measured import likely_quantity, measured, not_on_a_plan, setting_of
+from logbook.kinds._setting_fields import SETTING_FIELDS
 from logbook.model import Block, Result
 from logbook.pieces import Piece
 from logbook.quantities import BETTER, Better, KnownQuantity, known_quantity
@@ -15,8 +16,6 @@ from logbook.stage_fields import LEVEL
 from logbook.units import DIMENSIONS
 from logbook.yaml_nodes import Node, Scalar
 from logbook.yaml_nodes import Sequence as YamlSequence
-
-AVERAGING = ("power", "log", "voltage", "peak")
 
 # A unit of K can be meant in three ways; for a name of the user's own it is a temperature.
 _ANY = tuple(name for name in DIMENSIONS if name not in ("noise_temperature", "temperature_difference"))
@@ -62,19 +61,12 @@ def _result(node: Node, asked: Asked) -> Given | None:
 
 
 FIELDS = (
-    Field("chain", text()),
-    Field("bench", text()),
-    Field("through", many(text(), least=0)),
+    *SETTING_FIELDS,
     Field("through_detector", text()),
     Field("name", text()),
     Field("at", quantity("frequency", positive=True)),
     Field("drive", quantity(LEVEL)),
-    Field("rbw", quantity("frequency", positive=True)),
-    Field("vbw", quantity("frequency", positive=True)),
-    Field("averaging", choice(*AVERAGING)),
-    Field("temperature", quantity("temperature")),
     Field("source_temperature", quantity("noise_temperature", positive=True)),
-    Field("shown_at", choice("instrument", "unit")),
     Field("note", text()),
     Field("results", named(_result), required=True, help="Such as 'results: {gain: 41.8 dB}'."),
 )

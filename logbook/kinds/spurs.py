@@ -7,8 +7,8 @@ from dataclasses import dataclass, replace
 from logbook.fields import Field, choice, flag, many, mapping, pair, quantity, text, whole
 from logbook.kind import Kind, Outcome, Session, View
 from logbook.kinds._measured import Setting, derived, measured, not_on_a_plan, setting_of
+from logbook.kinds._setting_fields import AVERAGING
 from logbook.kinds._spur_search import found_spur, search_of, whole_plan
-from logbook.kinds.reading import AVERAGING
 from logbook.model import Block, Result, Values
 from logbook.pieces import Piece
 from logbook.showing.readings import show_results

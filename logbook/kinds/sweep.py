@@ -12,11 +12,11 @@ import numpy as np
 from logbook.fields import Asked, Field, Reader, choice, many, pair, quantity, text
 from logbook.kind import Kind, Outcome, Session
 from logbook.kinds._measured import Setting, derived, fresh, measured, not_on_a_plan, setting_of
+from logbook.kinds._setting_fields import SETTING_FIELDS
 from logbook.kinds._sweep_curve import Read, read_curve, with_article
 from logbook.kinds._sweep_lines import find_lines
 from logbook.kinds._sweep_reports import REPORTS, report
 from logbook.kinds._trace import axis
-from logbook.kinds.reading import AVERAGING
 from logbook.model import Block, Result, Values
 from logbook.problems import did_you_mean
 from logbook.quantities import BETTER, known_quantity
@@ -94,16 +94,9 @@ FIELDS = (
     Field("y", axis()),
     Field("reference", text()),
     Field("report", _reports()),
-    Field("chain", text()),
-    Field("bench", text()),
-    Field("through", many(text(), least=0)),
+    *SETTING_FIELDS,
     Field("at", quantity("frequency", positive=True)),
     Field("drive", quantity(("level", "voltage_level", "power", "voltage"))),
-    Field("rbw", quantity("frequency", positive=True)),
-    Field("vbw", quantity("frequency", positive=True)),
-    Field("averaging", choice(*AVERAGING)),
-    Field("shown_at", choice("instrument", "unit")),
-    Field("temperature", quantity("temperature")),
     Field("source_temperature", quantity("noise_temperature", positive=True)),
     Field("note", text()),
 )

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
+from typing import Protocol
 
 from logbook.bench import Bench
 from logbook.detector import Calibration
-from logbook.kind import Session
-from logbook.model import DERIVED, MEASURED, PLANNED, PREDICTED, Conditions, Parts, Result, Source, Values
+from logbook.kind import Outcome, Session
+from logbook.model import DERIVED, MEASURED, PLANNED, PREDICTED, Block, Conditions, Parts, Result, Source, Values
 from logbook.prediction import TOTAL_UNITS
 from logbook.problems import Place, did_you_mean
 from logbook.quantities import KNOWN, SPOKEN, Better, KnownQuantity, known_quantity
@@ -25,6 +27,20 @@ class Setting:
     bench: Bench | None
     conditions: Conditions
     session: Session
+
+
+class _Made(Protocol):
+    """What one mapping comes to."""
+
+    @property
+    def results(self) -> tuple[Result, ...]: ...
+
+
+def each_mapping(block: Block, session: Session, one: Callable[[Values, Session], _Made | None]) -> Outcome:
+    """The outcome of a block whose mappings come each to something with results; the faulty ones are left out."""
+    found = [one(values, session) for values in block.items]
+    sound = [each for each in found if each is not None]
+    return Outcome(tuple(result for each in sound for result in each.results), tuple(sound))
 
 
 def likely_quantity(name: str) -> str:

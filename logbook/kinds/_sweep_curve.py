@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from math import log10, nan
 
 import numpy as np
@@ -18,7 +18,7 @@ from logbook.physics.curves import less_reference
 from logbook.problems import did_you_mean
 from logbook.quantity import Quantity
 from logbook.sweep import Sweep
-from logbook.traces.touchstone import magnitude_db, read_touchstone
+from logbook.traces.touchstone import magnitude_trace, read_touchstone
 from logbook.traces.trace import Trace
 
 # What may stand on the y axis, by what the sweep is of.
@@ -187,13 +187,13 @@ def _touchstone(file: str, values: Values, session: Session) -> Trace | None:
         hint = did_you_mean(name, [f"S{i}{j}" for i in range(1, ports + 1) for j in range(1, ports + 1)])
         session.fault(values.place("y"), "parameter", message, hint)
         return None
-    y = np.asarray(magnitude_db(found, out, into), dtype=np.float64)
-    known = np.isfinite(y)
+    trace = magnitude_trace(found, out, into)
+    known = np.isfinite(trace.y)
     if known.sum() < _FEWEST:
         message = f"'{file}' has {known.sum()} points where {name} is not zero; {_FEWEST} are needed at least."
         session.fault(place, "points", message)
         return None
-    return Trace(name, file, found.frequency_hz, "Hz", np.where(known, y, nan), "dB")
+    return replace(trace, y=np.where(known, trace.y, nan))
 
 
 def _reference(values: Values, session: Session) -> _Reference | None:

@@ -10,6 +10,7 @@ from logbook.fields import Asked, Field, day, many, mapping, quantity, text
 from logbook.hardware import Parameter
 from logbook.kind import Kind, Outcome, Session, View
 from logbook.model import Block, Source, Values
+from logbook.physics.decibels import watt_from_dbm
 from logbook.physics.noise import noise_bandwidth_ratio
 from logbook.pieces import Line, Note, Piece, Table, Text
 from logbook.problems import did_you_mean
@@ -177,7 +178,7 @@ def bench_table(bench: Bench) -> Table:
 def _limit(dbm: float | None) -> str:
     if dbm is None:
         return ""
-    return f"{show_value(dbm, 'dBm')} ({show_value(10 ** (dbm / 10 - 3), 'W')})"
+    return f"{show_value(dbm, 'dBm')} ({show_value(float(watt_from_dbm(dbm)), 'W')})"
 
 
 KIND = Kind(

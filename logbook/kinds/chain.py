@@ -9,6 +9,7 @@ from logbook.hardware import Chain, Lineup, Parameter, Stage
 from logbook.kind import Kind, Outcome, Session, View
 from logbook.kinds._response import read_response
 from logbook.model import Block, Source, Values
+from logbook.physics.decibels import relative_from_u_db
 from logbook.physics.noise import fa_to_temperature
 from logbook.pieces import Piece
 from logbook.quantity import Quantity, level_dbm
@@ -118,7 +119,7 @@ def _source(values: Values, chain: str, revision: str, impedance: float) -> Para
         return None
     kelvin = float(fa_to_temperature(fa.value))
     # Fa is in dB; its doubt in kelvin, first order: dT = T·ln10/10·dFa.
-    u = None if fa.u is None else kelvin * 0.230258509299 * fa.u
+    u = None if fa.u is None else kelvin * float(relative_from_u_db(fa.u))
     return Parameter(kelvin, u, Source("chain", chain, "", "external_noise", revision))
 
 

@@ -10,7 +10,7 @@ from logbook.emissions import Emission, Judged, LineLevel
 from logbook.entry_text import decode
 from logbook.fields import Field, many, mapping, quantity, text
 from logbook.kind import Kind, Outcome, Session
-from logbook.kinds._measured import Setting, derived, measured, not_on_a_plan, setting_of
+from logbook.kinds._measured import Setting, derived, each_mapping, measured, not_on_a_plan, setting_of
 from logbook.kinds._setting_fields import SETTING_FIELDS
 from logbook.model import MEASURED, Block, Result, Values
 from logbook.physics.uncertainty import linear_sum
@@ -74,9 +74,7 @@ def calculate(block: Block, session: Session) -> Outcome:
     """The carrier, each line relative to it, and its margin to each rule."""
     if not not_on_a_plan("read", block.place, session):
         return Outcome()
-    found = [_one(values, session) for values in block.items]
-    sound = [each for each in found if each is not None]
-    return Outcome(tuple(result for each in sound for result in each.results), tuple(sound))
+    return each_mapping(block, session, _one)
 
 
 def _one(values: Values, session: Session) -> Emission | None:

@@ -10,7 +10,7 @@ import numpy as np
 
 from logbook.fields import Field, many, quantity, text
 from logbook.kind import Kind, Outcome, Session
-from logbook.kinds._measured import Setting, derived, measured, not_on_a_plan, overdue_note, setting_of
+from logbook.kinds._measured import Setting, derived, each_mapping, measured, not_on_a_plan, overdue_note, setting_of
 from logbook.kinds._setting_fields import SETTING_FIELDS
 from logbook.model import Block, Result, Source, Values
 from logbook.physics.noise_split import (
@@ -67,9 +67,7 @@ def calculate(block: Block, session: Session) -> Outcome:
     """The split of every mapping."""
     if not not_on_a_plan("read", block.place, session):
         return Outcome()
-    found = [_one(values, session) for values in block.items]
-    sound = [each for each in found if each is not None]
-    return Outcome(tuple(result for each in sound for result in each.results), tuple(sound))
+    return each_mapping(block, session, _one)
 
 
 def _one(values: Values, session: Session) -> Split | None:

@@ -15,7 +15,7 @@ from logbook.kinds._trace import axis, trace_of
 from logbook.model import Block, Result, Values
 from logbook.physics.detector import DetectorFit, conformance_errors, fit_detector, range_within, step_errors
 from logbook.quantity import Quantity, level_dbm
-from logbook.showing.staircase import show_staircase
+from logbook.showing.staircase import WITHIN_DB, show_staircase
 from logbook.stage_fields import LEVEL
 
 _OUTPUT = ("voltage", "divisions")
@@ -43,8 +43,6 @@ input: [-70 dBm, -60 dBm, -50 dBm, -40 dBm, -30 dBm, -20 dBm, -10 dBm, 0 dBm]
 output: [0.412 V, 0.601 V, 0.803 V, 1.001 V, 1.204 V, 1.399 V, 1.590 V, 1.702 V]
 fit: [-60 dBm, -10 dBm]
 """
-
-WITHIN_DB = (0.5, 1.0, 3.0)
 
 
 def calculate(block: Block, session: Session) -> Outcome:

@@ -8,6 +8,7 @@ import numpy.typing as npt
 from logbook.hardware import Chain, Parameter
 from logbook.model import Source
 from logbook.physics.constants import T0, Array
+from logbook.physics.linearity import input_compression_from_output, input_intercept_from_output
 from logbook.physics.noise import (
     galactic_temperature,
     image_from_rejection,
@@ -188,8 +189,8 @@ def limits(copies: Copies, gain: Array, name: str) -> Array:
     given = copies.given(output) & ~copies.given(name)
     if not given.any():
         return found
-    kept = 1.0 if name == "ip1db" else 0.0
-    return np.where(given, copies.matrix(output) - gain + kept, found)
+    at_input = input_compression_from_output if name == "ip1db" else input_intercept_from_output
+    return np.where(given, at_input(copies.matrix(output), gain), found)
 
 
 def source_temperature(copies: Copies, terms: Terms) -> Array:

@@ -8,7 +8,9 @@ import numpy as np
 
 from logbook.hardware import Chain, Parameter
 from logbook.physics.cascade import Cascade, Stages
-from logbook.physics.constants import T0, Array
+from logbook.physics.constants import Array
+from logbook.physics.linearity import output_compression, output_intercept, sensitivity, sfdr
+from logbook.physics.noise import temperature_from_nf
 from logbook.prediction.copies import Copies
 from logbook.prediction.data import TOTAL_UNITS, Estimate, LazyTotals, Terms
 
@@ -75,7 +77,7 @@ class Totals:
         return self.copies.estimate("nf", self.done.nf_db[..., -1], self.why or _NO_GAIN)
 
     def _noise_temperature(self) -> Estimate:
-        kelvin = T0 * (10 ** (self.done.nf_db[..., -1] / 10) - 1)
+        kelvin = temperature_from_nf(self.done.nf_db[..., -1])
         return self.copies.estimate("noise_temperature", kelvin, self.why or _NO_GAIN)
 
     def _noise_floor(self) -> Estimate:
@@ -89,7 +91,7 @@ class Totals:
 
     def _sensitivity(self) -> Estimate:
         snr = self.copies.scalar("snr", self.copies.chain.snr_db)
-        return self.copies.estimate("sensitivity", self.floor + snr, self.wide)
+        return self.copies.estimate("sensitivity", sensitivity(self.floor, snr), self.wide)
 
     def _snr_weakest(self) -> Estimate:
         weakest = self.copies.scalar("weakest", self.copies.chain.weakest)
@@ -98,17 +100,17 @@ class Totals:
     def _sfdr(self) -> Estimate:
         iip3 = self.done.iip3_dbm[..., -1]
         words = self.wide if np.isfinite(iip3[0]) else _no_stage_gives("third-order")
-        return self.copies.estimate("sfdr", 2 / 3 * (iip3 - self.floor), words)
+        return self.copies.estimate("sfdr", sfdr(iip3, self.floor), words)
 
     def _intercept(self, name: str) -> Estimate:
         third = name.endswith("3")
         values = (self.done.iip3_dbm if third else self.done.iip2_dbm)[..., -1]
         said = _no_stage_gives("third-order" if third else "second-order")
-        return self.copies.estimate(name, values if name.startswith("i") else values + self.gain, said)
+        return self.copies.estimate(name, values if name.startswith("i") else output_intercept(values, self.gain), said)
 
     def _compression(self, name: str) -> Estimate:
         point = self.done.ip1db_dbm[..., -1]
-        return self.copies.estimate(name, point if name == "ip1db" else point + self.gain - 1, _NO_POINT)
+        return self.copies.estimate(name, point if name == "ip1db" else output_compression(point, self.gain), _NO_POINT)
 
     def _headroom(self, name: str, level: Parameter) -> Estimate:
         entering = self.copies.scalar(name.removeprefix("headroom_") if "_" in name else "level", level)

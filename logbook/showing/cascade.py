@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from math import isnan, log10
 
-from logbook.physics.constants import T0
+from logbook.physics.linearity import output_compression, output_intercept
+from logbook.physics.noise import temperature_from_nf
 from logbook.pieces import Line, Note, Piece, Table
 from logbook.prediction import FIRST_ORDER_UP_TO_DB, Prediction, by_monte_carlo, wide_inputs
 from logbook.quantity_display import show_frequency, show_value
@@ -88,12 +89,12 @@ def further_table(prediction: Prediction) -> Table:
         rows.append(
             (
                 node.stage,
-                plain(T0 * (10 ** (node.nf_db / 10) - 1), "K"),
+                plain(float(temperature_from_nf(node.nf_db)), "K"),
                 decibels(density),
                 decibels(node.iip2_dbm),
-                decibels(node.iip3_dbm + node.gain_db),
-                decibels(node.iip2_dbm + node.gain_db),
-                decibels(node.ip1db_dbm + node.gain_db - 1),
+                decibels(output_intercept(node.iip3_dbm, node.gain_db)),
+                decibels(output_intercept(node.iip2_dbm, node.gain_db)),
+                decibels(output_compression(node.ip1db_dbm, node.gain_db)),
             )
         )
     head = (

@@ -8,6 +8,7 @@ from logbook.compare.verdicts import target_verdict
 from logbook.emissions import Emission, Judged, LineLevel
 from logbook.kind import Outcome, View
 from logbook.model import Block, standard_uncertainty
+from logbook.physics.decibels import watt_from_dbm
 from logbook.physics.emission import reference_bandwidth
 from logbook.physics.uncertainty import conformity
 from logbook.pieces import Folded, Items, Line, Note, Piece, Strong, Table, Text, Verdict
@@ -65,7 +66,7 @@ def _name(line: LineLevel, carrier_hz: float) -> str:
 
 
 def _watts(dbm: float) -> str:
-    return show_value(float(f"{10 ** (dbm / 10 - 3):.3g}"), "W")
+    return show_value(float(f"{watt_from_dbm(dbm):.3g}"), "W")
 
 
 def _bandwidths(emission: Emission) -> list[Piece]:

@@ -15,7 +15,7 @@ from logbook.quantity_display import show_value
 from logbook.showing.readings import show_results
 from logbook.showing.words import plain
 
-_LIMITS = (0.5, 1.0, 3.0)
+WITHIN_DB = (0.5, 1.0, 3.0)
 
 
 def show_staircase(block: Block, outcome: Outcome, view: View) -> list[Piece]:
@@ -111,7 +111,7 @@ def _ranges(detector: Calibration) -> Table:
     steps = detector.steps
     errors = conformance_errors(detector.fit, steps.input_dbm, steps.output)
     rows: list[tuple[Line, ...]] = []
-    for limit in _LIMITS:
+    for limit in WITHIN_DB:
         low, high = range_within(steps.input_dbm, errors, limit, detector.window_dbm)
         rows.append((f"±{limit:g} dB", plain(low, "dBm") or "none", plain(high, "dBm"), plain(high - low, "dB")))
     return Table(("good within", "from", "to", "range"), tuple(rows), "Range", frozenset({1, 2, 3}))

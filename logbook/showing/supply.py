@@ -7,6 +7,7 @@ from math import isfinite, isnan
 
 from logbook.kind import Outcome, View
 from logbook.model import Block, Result, Values
+from logbook.physics.supply import after_rejection
 from logbook.pieces import Line, Note, Piece, Table, Text
 from logbook.quantity import Quantity
 from logbook.quantity_display import show_frequency, show_value
@@ -84,7 +85,7 @@ def _table(supply: Supply) -> Table:
     for line in supply.lines:
         band = "" if isnan(line.rms_v) else " to ".join(show_frequency(f) for f in line.band_hz)
         psrr = "" if line.psrr is None else show_value(line.psrr[0], "dB", line.psrr[1])
-        left = "" if line.psrr is None else show_value(line.density * 10 ** (-line.psrr[0] / 20), "V/rtHz")
+        left = "" if line.psrr is None else show_value(float(after_rejection(line.density, line.psrr[0])), "V/rtHz")
         rows.append(
             (line.name, line.written, band, plain(line.rms_v, "V"), show_value(line.density, "V/rtHz"), psrr, left)
         )

@@ -207,6 +207,8 @@ class LogbookPlugin(BasePlugin[LogbookConfig]):  # type: ignore[no-untyped-call]
             index.with_suffix(".js").write_text(f"var __index = {words}", encoding="utf-8")
         if self.dirty:
             Thread(target=self._tidy_up, args=(self.book, Path(config.site_dir) / RESULTS), daemon=True).start()
+        if not self.serving:
+            self.cache.prune()
         failed = failures(self.book, self.options.fail_on)
         if failed and self.serving:
             log.warning(failure_words(failed))
